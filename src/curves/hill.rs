@@ -113,8 +113,8 @@ impl ReturnCurve for Hill {
         if marginal <= 0.0 {
             return SpendRange::at(f64::INFINITY);
         }
-        if k == 1.0 && marginal >= ceiling / scale {
-            return SpendRange::at(0.0);
+        if marginal == f64::INFINITY || (k == 1.0 && marginal >= ceiling / scale) {
+            return SpendRange::at(self.turning_spend());
         }
         let turning = self.turning_spend();
         if k > 1.0 && marginal >= self.marginal(turning) {

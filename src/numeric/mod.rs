@@ -3,4 +3,4 @@
 pub mod figures;
 mod summation;
 
-pub use summation::{BLOCK, CompensatedSum, block_sums};
+pub use summation::{BLOCK, CompensatedSum, block_sums, lane_sum};

@@ -1,52 +1,142 @@
 //! From a problem to a solution, by bisection on the shadow price.
+//!
+//! At a price λ of what is limited, every activity asks for the spend whose last unit earns λ
+//! ([`demand`]). What they ask for together falls as λ rises, so the price at which it meets
+//! the limit can be enclosed and bisected ([`price`]). At a jump the activities at the margin share
+//! what is left ([`share`]).
+//!
+//! Everything here maximises: costs enter with their sign turned, see
+//! [`Problem::worth`](crate::model::Problem::worth).
 
-use crate::model::{Problem, Solution};
+mod compile;
+mod demand;
+mod error;
+mod price;
+mod rounding;
+mod share;
 
-/// Why there is no plan.
-#[derive(Debug, Clone, PartialEq, thiserror::Error)]
-pub enum SolveError {
-    /// Floors and caps leave no plan that meets the limit.
-    #[error("no plan meets the limit")]
-    Infeasible {
-        /// Index of the constraint.
-        constraint: usize,
-        /// Its limit.
-        limit: f64,
-        /// Least use that the floors allow, in units of the limit.
-        least_use: f64,
-        /// Greatest use that the caps allow; +∞ for no end.
-        greatest_use: f64,
-    },
-    /// The total improves without end as this activity's spend grows.
-    #[error("the total improves without end")]
-    Unbounded {
-        /// Index of the activity.
-        activity: usize,
-    },
-    /// The only spend that the limits leave for this activity has no finite return.
-    #[error("the limits leave an activity at a spend without a finite return")]
-    NoFiniteTotal {
-        /// Index of the activity.
-        activity: usize,
-    },
-    /// The plan has not exactly one constraint.
-    #[error("a plan needs exactly one constraint, found {found}")]
-    NotOneConstraint {
-        /// How many there are.
-        found: usize,
-    },
-    /// A unit of spend on this activity uses nothing, or less than nothing, of what is limited.
-    #[error("every unit of spend must use some of what is limited")]
-    UseNotPositive {
-        /// Index of the activity.
-        activity: usize,
-    },
-}
+pub use demand::{Demand, UseRange};
+pub use error::SolveError;
+pub use rounding::{RoundError, Rounded, round_spends};
+
+use crate::curves::ReturnCurve;
+use crate::model::{Problem, Sense, Solution};
+use crate::numeric::block_sums;
+use price::PriceBracket;
 
 /// The best plan: the spends at which the last unit earns the same everywhere.
 ///
 /// # Errors
-/// [`SolveError`] where no best plan exists.
-pub fn solve(_problem: &Problem) -> Result<Solution, SolveError> {
-    unimplemented!()
+/// [`SolveError`] where no best plan exists, or where the plan has not exactly one constraint
+/// with positive use.
+pub fn solve(problem: &Problem) -> Result<Solution, SolveError> {
+    let demand = demand_of(problem)?;
+    let constraint = &problem.constraints()[0];
+    let (limit, sense) = (constraint.limit, constraint.sense);
+    let [least_use, greatest_use] = use_of_bounds(problem);
+    let too_low = limit < least_use && sense != Sense::AtLeast;
+    let too_high = limit > greatest_use && sense != Sense::AtMost;
+    if too_low || too_high {
+        return Err(SolveError::Infeasible {
+            constraint: 0,
+            limit,
+            least_use,
+            greatest_use,
+        });
+    }
+
+    let bracket = if limit == least_use && sense != Sense::AtLeast {
+        PriceBracket::exactly(first_unit_price(problem))
+    } else if limit == greatest_use && sense != Sense::AtMost {
+        PriceBracket::exactly(last_unit_price(problem))
+    } else if price_is_zero(&demand, sense, limit) {
+        PriceBracket::exactly(0.0)
+    } else {
+        price::enclose(&demand, sense, limit)
+    };
+    let spends = share::spends_within(problem, bracket, sense, limit)?;
+    // Only at zero spend can a curve be without a finite return.
+    let infinite = |&i: &usize| spends[i] == 0.0 && problem.worth(i).value(0.0).is_infinite();
+    if let Some(activity) = (0..spends.len()).find(infinite) {
+        return Err(SolveError::NoFiniteTotal { activity });
+    }
+    Ok(Solution {
+        spends,
+        shadow_prices: vec![problem.aim().sign() * bracket.price()],
+    })
+}
+
+/// The activities' demand for what the plan's one constraint limits.
+///
+/// # Errors
+/// [`SolveError::NotOneConstraint`] or [`SolveError::UseNotPositive`].
+pub fn demand_of(problem: &Problem) -> Result<Demand, SolveError> {
+    let [constraint] = problem.constraints() else {
+        return Err(SolveError::NotOneConstraint {
+            found: problem.constraints().len(),
+        });
+    };
+    let count = problem.activities().len();
+    if let Some(activity) = (0..count).find(|&i| constraint.use_per_unit(i) <= 0.0) {
+        return Err(SolveError::UseNotPositive { activity });
+    }
+    Ok(compile::compile(problem))
+}
+
+/// What all floors, and what all caps, use of the plan's one constraint.
+fn use_of_bounds(problem: &Problem) -> [f64; 2] {
+    let constraint = &problem.constraints()[0];
+    block_sums(problem.activities().len(), |i| {
+        let (activity, use_per_unit) = (&problem.activities()[i], constraint.use_per_unit(i));
+        [use_per_unit * activity.floor, use_per_unit * activity.cap]
+    })
+}
+
+/// Whether the limit does not bind: at price zero the activities ask for no more than an upper
+/// limit, or for no less than a lower one.
+fn price_is_zero(demand: &Demand, sense: Sense, limit: f64) -> bool {
+    let free = demand.at(0.0);
+    match sense {
+        Sense::AtMost => free.least <= limit,
+        Sense::AtLeast => free.greatest >= limit,
+        Sense::Equal => free.least <= limit && limit <= free.greatest,
+    }
+}
+
+/// The least price at which every activity stays at its floor: the best first unit's.
+fn first_unit_price(problem: &Problem) -> f64 {
+    let constraint = &problem.constraints()[0];
+    let open = |i: &usize| problem.activities()[*i].floor < problem.activities()[*i].cap;
+    (0..problem.activities().len())
+        .filter(open)
+        .map(|i| {
+            problem.worth(i).marginal(problem.activities()[i].floor) / constraint.use_per_unit(i)
+        })
+        .reduce(f64::max)
+        .map_or(0.0, |price| within_sense(constraint.sense, price))
+}
+
+/// The greatest price at which every activity stays at its cap: the poorest last unit's.
+fn last_unit_price(problem: &Problem) -> f64 {
+    let constraint = &problem.constraints()[0];
+    let open = |i: &usize| problem.activities()[*i].floor < problem.activities()[*i].cap;
+    (0..problem.activities().len())
+        .filter(open)
+        .map(|i| {
+            problem
+                .worth(i)
+                .marginal_before(problem.activities()[i].cap)
+                / constraint.use_per_unit(i)
+        })
+        .reduce(f64::min)
+        .map_or(0.0, |price| within_sense(constraint.sense, price))
+}
+
+/// An upper limit never has a negative price, a lower one never a positive.
+fn within_sense(sense: Sense, price: f64) -> f64 {
+    match sense {
+        Sense::AtMost => price.max(0.0),
+        Sense::AtLeast => price.min(0.0),
+        Sense::Equal => price,
+    }
 }
