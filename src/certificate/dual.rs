@@ -1,0 +1,231 @@
+//! Residuals of the optimality conditions and the gap to the dual value, in one pass.
+//!
+//! With p_i = Σ_k λ_k a_ki the price of a unit of activity i, the dual value is
+//!
+//! ```text
+//! g(λ) = Σ_i max_x [f_i(x) − p_i x] + Σ_k λ_k b_k,   f_i the activity's worth
+//! ```
+//!
+//! and g(λ) ≥ Σ f_i(x_i) for any plan x that meets the constraints (weak duality: S. Boyd and
+//! L. Vandenberghe, *Convex Optimization*, 2004, sec. 5.1.3). Its distance from the total is
+//! summed term by term as what each activity could still gain at these prices, so that no large
+//! numbers cancel.
+
+use rayon::prelude::*;
+
+use crate::curves::ReturnCurve;
+use crate::model::{Activity, Constraint, Problem, Sense, Solution};
+use crate::numeric::{BLOCK, CompensatedSum};
+
+/// Units in the last place to which a spend is taken when its marginal return is compared with
+/// the price. Where a curve is steep, one of them changes the marginal return by more than
+/// any tolerance.
+const SPEND_ROUNDING: f64 = 4.0 * f64::EPSILON;
+
+/// What a plan misses, in units of worth where not said otherwise.
+#[derive(Debug, Clone, Copy)]
+pub(super) struct Residuals {
+    /// g(λ) − Σ f_i(x_i), ≥ 0; +∞ where the prices prove nothing.
+    pub gap: f64,
+    /// Relative violation of bounds and limits.
+    pub primal: f64,
+    /// Relative miss of marginal return and price.
+    pub stationarity: f64,
+    /// Greatest |λ_k·slack_k|.
+    pub complementarity: f64,
+    /// Σ|f_i(x_i)|, what gap and complementarity are compared with.
+    pub scale: f64,
+}
+
+/// The share of one activity, or of a block of them.
+#[derive(Clone, Copy, Default)]
+struct Share {
+    gap: CompensatedSum,
+    scale: CompensatedSum,
+    primal: f64,
+    stationarity: f64,
+}
+
+impl Residuals {
+    /// Residuals and gap of a plan at the reported prices.
+    pub(super) fn of(problem: &Problem, solution: &Solution) -> Self {
+        let sign = problem.aim().sign();
+        // Prices in units of worth: more is better, whatever the aim.
+        let prices: Vec<f64> = solution
+            .shadow_prices
+            .iter()
+            .map(|price| sign * price)
+            .collect();
+        let count = problem.activities().len();
+        if solution.spends.len() != count || prices.len() != problem.constraints().len() {
+            return Self::nothing_proven();
+        }
+        let blocks: Vec<Share> = (0..count.div_ceil(BLOCK))
+            .into_par_iter()
+            .map(|block| {
+                let mut share = Share::default();
+                for i in block * BLOCK..count.min((block + 1) * BLOCK) {
+                    share.add_activity(problem, &prices, i, solution.spends[i]);
+                }
+                share
+            })
+            .collect();
+        let mut whole = Share::default();
+        for share in blocks {
+            whole.join(share);
+        }
+        let mut complementarity: f64 = 0.0;
+        for (k, (constraint, &price)) in problem.constraints().iter().zip(&prices).enumerate() {
+            let used = problem.used(k, &solution.spends);
+            whole.primal = worst(whole.primal, violation(constraint, used));
+            let price_of_slack = match constraint.slack(used) {
+                0.0 => 0.0,
+                slack => price * slack,
+            };
+            complementarity = worst(complementarity, price_of_slack.abs());
+            whole.gap.add(if has_right_sign(constraint.sense, price) {
+                price_of_slack
+            } else {
+                f64::INFINITY
+            });
+        }
+        let gap = whole.gap.total();
+        Self {
+            // Rounding can leave a gap of −1e-17; a NaN proves nothing.
+            gap: if gap.is_nan() {
+                f64::INFINITY
+            } else {
+                gap.max(0.0)
+            },
+            primal: whole.primal,
+            stationarity: whole.stationarity,
+            complementarity,
+            scale: whole.scale.total(),
+        }
+    }
+
+    /// `amount` as a share of Σ|f_i|.
+    pub(super) fn relative(&self, amount: f64) -> f64 {
+        if amount == 0.0 {
+            0.0
+        } else {
+            amount / self.scale
+        }
+    }
+
+    fn nothing_proven() -> Self {
+        Self {
+            gap: f64::INFINITY,
+            primal: f64::INFINITY,
+            stationarity: f64::INFINITY,
+            complementarity: f64::INFINITY,
+            scale: 0.0,
+        }
+    }
+}
+
+impl Share {
+    fn add_activity(&mut self, problem: &Problem, prices: &[f64], i: usize, spend: f64) {
+        let activity = &problem.activities()[i];
+        let worth = problem.worth(i);
+        let price = price_of_unit(problem.constraints(), prices, i);
+        let value = worth.value(spend);
+        self.scale.add(value.abs());
+        self.primal = worst(self.primal, out_of_bounds(activity, spend));
+
+        // What the activity could still gain at this price: nothing at a spend whose last unit
+        // earns it.
+        let earning = worth
+            .inverse_marginal(price)
+            .clipped(activity.floor, activity.cap);
+        if earning.least <= spend && spend <= earning.greatest {
+            return;
+        }
+        let gain = worth.value(earning.least) - value - price * (earning.least - spend);
+        self.gap.add(if gain.is_nan() {
+            f64::INFINITY
+        } else {
+            gain.max(0.0)
+        });
+
+        let (floor, cap) = (activity.floor, activity.cap);
+        if spend < cap {
+            let next = worth.marginal((spend * (1.0 + SPEND_ROUNDING)).min(cap));
+            self.stationarity = worst(self.stationarity, excess(next, price));
+        }
+        if floor < spend {
+            let last = worth.marginal_before((spend * (1.0 - SPEND_ROUNDING)).max(floor));
+            self.stationarity = worst(self.stationarity, excess(price, last));
+        }
+    }
+
+    fn join(&mut self, later: Self) {
+        self.gap.join(later.gap);
+        self.scale.join(later.scale);
+        self.primal = worst(self.primal, later.primal);
+        self.stationarity = worst(self.stationarity, later.stationarity);
+    }
+}
+
+/// p_i = Σ_k λ_k a_ki, worth per unit of spend.
+fn price_of_unit(constraints: &[Constraint], prices: &[f64], i: usize) -> f64 {
+    constraints
+        .iter()
+        .zip(prices)
+        .map(|(constraint, &price)| match constraint.use_per_unit(i) {
+            0.0 => 0.0,
+            use_per_unit => price * use_per_unit,
+        })
+        .sum()
+}
+
+/// By how much `greater` exceeds `lesser`, relative to the larger of them; 0 where it does not.
+fn excess(greater: f64, lesser: f64) -> f64 {
+    if greater <= lesser {
+        return 0.0;
+    }
+    let size = greater.abs().max(lesser.abs());
+    if size.is_finite() {
+        (greater - lesser) / size
+    } else {
+        f64::INFINITY
+    }
+}
+
+/// Relative distance of a spend from its bounds.
+fn out_of_bounds(activity: &Activity, spend: f64) -> f64 {
+    if !spend.is_finite() {
+        return f64::INFINITY;
+    }
+    excess(activity.floor, spend).max(excess(spend, activity.cap))
+}
+
+/// Relative violation of a limit.
+fn violation(constraint: &Constraint, used: f64) -> f64 {
+    let over = excess(used, constraint.limit);
+    let under = excess(constraint.limit, used);
+    match constraint.sense {
+        Sense::AtMost => over,
+        Sense::AtLeast => under,
+        Sense::Equal => over.max(under),
+    }
+}
+
+/// An upper limit bounds the total through a price of at least 0, a lower one through a price
+/// of at most 0.
+fn has_right_sign(sense: Sense, price: f64) -> bool {
+    match sense {
+        Sense::AtMost => price >= 0.0,
+        Sense::AtLeast => price <= 0.0,
+        Sense::Equal => !price.is_nan(),
+    }
+}
+
+/// The greater of two residuals; a NaN is the worst of all.
+fn worst(one: f64, other: f64) -> f64 {
+    if one.is_nan() || other.is_nan() {
+        f64::INFINITY
+    } else {
+        one.max(other)
+    }
+}

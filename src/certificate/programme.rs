@@ -1,0 +1,219 @@
+//! The linear programme over polylines, and its dual written out.
+//!
+//! Every segment is a variable between 0 and 1, the share of it that is taken, and every row is
+//! divided by its own size, so that the numbers the LP solver sees are of the order of 1
+//! whatever the units of the plan.
+
+use good_lp::{
+    Expression, ProblemVariables, Solution as _, SolverModel, Variable, constraint, microlp,
+    variable,
+};
+
+use super::polyline::Polyline;
+use crate::model::{Problem, Sense};
+
+/// One share-of-a-segment variable.
+struct Column {
+    activity: usize,
+    /// Units of spend that a share of 1 takes.
+    width: f64,
+    /// Whether the share ends at 1.
+    ends: bool,
+    /// Objective of a share of 1, in units of `Programme::unit`.
+    gain: f64,
+}
+
+/// max Σ gain_v·v subject to Σ use_kv·v ≤ = ≥ left_k, 0 ≤ v ≤ 1.
+pub(super) struct Programme<'a> {
+    problem: &'a Problem,
+    polylines: &'a [Polyline],
+    columns: Vec<Column>,
+    /// What the rows leave beyond the polylines' starts, and the size by which each is divided.
+    left: Vec<f64>,
+    row_size: Vec<f64>,
+    /// The unit of the objective, in units of worth.
+    unit: f64,
+    /// Worth of the polylines' starts.
+    offset: f64,
+}
+
+/// The solution of a programme.
+pub(super) struct Optimum {
+    /// Its objective, units of worth.
+    pub worth: f64,
+    /// The spend of every activity.
+    pub spends: Vec<f64>,
+}
+
+impl<'a> Programme<'a> {
+    pub(super) fn new(problem: &'a Problem, polylines: &'a [Polyline]) -> Result<Self, String> {
+        let constraints = problem.constraints();
+        let left: Vec<f64> = constraints
+            .iter()
+            .map(|constraint| {
+                let started = polylines.iter().enumerate().map(|(i, line)| {
+                    if line.start == 0.0 {
+                        0.0
+                    } else {
+                        constraint.use_per_unit(i) * line.start
+                    }
+                });
+                constraint.limit - started.sum::<f64>()
+            })
+            .collect();
+        let row_size: Vec<f64> = constraints
+            .iter()
+            .zip(&left)
+            .map(|(constraint, left)| left.abs().max(f64::EPSILON * constraint.limit.abs()))
+            .map(|size| if size > 0.0 { size } else { 1.0 })
+            .collect();
+        let mut columns = Vec::new();
+        for (activity, line) in polylines.iter().enumerate() {
+            // A segment without end is measured by what the rows could ask of it.
+            let reach = constraints
+                .iter()
+                .zip(&row_size)
+                .filter(|(constraint, _)| constraint.use_per_unit(activity) != 0.0)
+                .map(|(constraint, size)| size / constraint.use_per_unit(activity).abs())
+                .fold(1.0, f64::max);
+            for segment in &line.segments {
+                let ends = segment.width.is_finite();
+                let width = if ends { segment.width } else { reach };
+                columns.push(Column {
+                    activity,
+                    width,
+                    ends,
+                    gain: width * segment.slope,
+                });
+            }
+        }
+        let unit = columns
+            .iter()
+            .map(|column| column.gain.abs())
+            .fold(0.0, f64::max);
+        let unit = if unit > 0.0 { unit } else { 1.0 };
+        for column in &mut columns {
+            column.gain /= unit;
+        }
+        let offset: f64 = polylines.iter().map(|line| line.worth).sum();
+        let programme = Self {
+            problem,
+            polylines,
+            columns,
+            left,
+            row_size,
+            unit,
+            offset,
+        };
+        programme
+            .is_finite()
+            .then_some(programme)
+            .ok_or_else(|| "the plan's numbers are too large for a linear programme".to_owned())
+    }
+
+    /// The LP solver would take a NaN for a zero.
+    fn is_finite(&self) -> bool {
+        self.unit.is_finite()
+            && self.offset.is_finite()
+            && self.left.iter().all(|left| left.is_finite())
+            && self.columns.iter().enumerate().all(|(v, column)| {
+                column.gain.is_finite()
+                    && (0..self.left.len()).all(|k| self.row_use(k, v).is_finite())
+            })
+    }
+
+    /// Use of row k by a share of 1 of column v, in units of the row's size.
+    fn row_use(&self, k: usize, v: usize) -> f64 {
+        let column = &self.columns[v];
+        let per_unit = self.problem.constraints()[k].use_per_unit(column.activity);
+        per_unit * column.width / self.row_size[k]
+    }
+
+    /// Solves the programme.
+    pub(super) fn solve(&self) -> Result<Optimum, String> {
+        let mut variables = ProblemVariables::new();
+        let shares: Vec<Variable> = self
+            .columns
+            .iter()
+            .map(|column| {
+                let share = variable().min(0.0);
+                variables.add(if column.ends { share.max(1.0) } else { share })
+            })
+            .collect();
+        let objective: Expression = self
+            .columns
+            .iter()
+            .zip(&shares)
+            .map(|(column, &share)| column.gain * share)
+            .sum();
+        let mut model = variables.maximise(objective).using(microlp);
+        for (k, row) in self.problem.constraints().iter().enumerate() {
+            let used: Expression = shares
+                .iter()
+                .enumerate()
+                .map(|(v, &share)| self.row_use(k, v) * share)
+                .sum();
+            let left = self.left[k] / self.row_size[k];
+            model.add_constraint(match row.sense {
+                Sense::AtMost => constraint!(used <= left),
+                Sense::Equal => constraint!(used == left),
+                Sense::AtLeast => constraint!(used >= left),
+            });
+        }
+        let solved = model.solve().map_err(|fault| fault.to_string())?;
+        let mut spends: Vec<f64> = self.polylines.iter().map(|line| line.start).collect();
+        let mut gain = 0.0;
+        for (column, &share) in self.columns.iter().zip(&shares) {
+            spends[column.activity] += column.width * solved.value(share);
+            gain += column.gain * solved.value(share);
+        }
+        Ok(Optimum {
+            worth: self.offset + self.unit * gain,
+            spends,
+        })
+    }
+
+    /// Solves the dual, min Σ left_k·y_k + Σ z_v subject to Σ use_kv·y_k + z_v ≥ gain_v, and gives
+    /// the y: the price of every row, units of worth per unit of its limit.
+    pub(super) fn prices(&self) -> Result<Vec<f64>, String> {
+        let mut variables = ProblemVariables::new();
+        let prices: Vec<Variable> = self
+            .problem
+            .constraints()
+            .iter()
+            .map(|row| {
+                variables.add(match row.sense {
+                    Sense::AtMost => variable().min(0.0),
+                    Sense::Equal => variable(),
+                    Sense::AtLeast => variable().max(0.0),
+                })
+            })
+            .collect();
+        let rents: Vec<Option<Variable>> = self
+            .columns
+            .iter()
+            .map(|column| column.ends.then(|| variables.add(variable().min(0.0))))
+            .collect();
+        let limits = self.left.iter().zip(&self.row_size).zip(&prices);
+        let objective: Expression = limits
+            .map(|((left, size), &price)| left / size * price)
+            .sum::<Expression>()
+            + rents.iter().flatten().copied().sum::<Expression>();
+        let mut model = variables.minimise(objective).using(microlp);
+        for (v, (column, rent)) in self.columns.iter().zip(&rents).enumerate() {
+            let paid: Expression = prices
+                .iter()
+                .enumerate()
+                .map(|(k, &price)| self.row_use(k, v) * price)
+                .sum();
+            let paid = rent.map_or(paid.clone(), |rent| paid + rent);
+            model.add_constraint(constraint!(paid >= column.gain));
+        }
+        let solved = model.solve().map_err(|fault| fault.to_string())?;
+        Ok(prices
+            .iter()
+            .zip(&self.row_size)
+            .map(|(&price, size)| solved.value(price) * self.unit / size)
+            .collect())
+    }
+}
