@@ -2,8 +2,8 @@
 //!
 //! Chords of the curves give a plan that can be carried out, so the best total is at least
 //! theirs; tangents give a relaxation, so it is at most theirs. The breakpoints begin around the
-//! given spends and move to what the programmes themselves prefer, until both ends meet: if the
-//! spends were wrong, the bracket closes elsewhere and leaves them outside.
+//! given spends and move to what the programmes themselves prefer, until both ends meet or leave
+//! the claimed total outside.
 
 use rayon::prelude::*;
 
@@ -15,10 +15,14 @@ use crate::model::{Aim, Problem, Sense, Solution};
 
 /// Activities and pieces of tabulated curves, together, up to which the cross-check runs unless
 /// it is asked for: about a second on one core.
-pub const CROSS_CHECKED_UP_TO: usize = 200;
+pub const CROSS_CHECKED_UP_TO: usize = 2_000;
 
 /// Relative width at which the bracket counts as closed.
 pub const BRACKET_WIDTH: f64 = 1e-6;
+
+/// By how much the total may lie outside the bracket, relative to its size: what the LP solver's
+/// own tolerance leaves.
+pub const BRACKET_TOLERANCE: f64 = 1e-7;
 
 /// Refinements after which the bracket is reported as it is.
 const MOST_ROUNDS: usize = 40;
@@ -53,6 +57,8 @@ pub struct LpBracket {
     pub prices: Vec<f64>,
     /// How often the breakpoints were refined.
     pub rounds: usize,
+    /// Whether the plan's total lies within, to [`BRACKET_TOLERANCE`].
+    pub encloses: bool,
 }
 
 /// Runs the cross-check, unless the plan is too large for one that was not asked for.
@@ -119,6 +125,7 @@ fn enclose(problem: &Problem, solution: &Solution) -> Result<LpBracket, String> 
         })
         .sum();
     let sign = problem.aim().sign();
+    let claimed = sign * (problem.total(&solution.spends) - bases);
     let mut rounds = 0;
     loop {
         let chords: Vec<Polyline> = breakpoints.iter().map(Breakpoints::chords).collect();
@@ -130,7 +137,11 @@ fn enclose(problem: &Problem, solution: &Solution) -> Result<LpBracket, String> 
         let (least, most) = rayon::join(|| below.solve(), || above.solve());
         let (least, most) = (least?, most?);
         let size = least.worth.abs().max(most.worth.abs());
-        if most.worth - least.worth <= BRACKET_WIDTH * size || rounds == MOST_ROUNDS {
+        let room = BRACKET_TOLERANCE * size;
+        let encloses = least.worth - room <= claimed && claimed <= most.worth + room;
+        let closed = most.worth - least.worth <= BRACKET_WIDTH * size;
+        // A claim outside the bracket stays outside every narrower one.
+        if closed || !encloses || rounds == MOST_ROUNDS {
             let ends = [sign * least.worth + bases, sign * most.worth + bases];
             let [lower, upper] = match problem.aim() {
                 Aim::Maximise => ends,
@@ -146,6 +157,7 @@ fn enclose(problem: &Problem, solution: &Solution) -> Result<LpBracket, String> 
                 upper,
                 prices,
                 rounds,
+                encloses,
             });
         }
         breakpoints

@@ -11,7 +11,7 @@ mod dual;
 mod polyline;
 mod programme;
 
-pub use bracket::{BRACKET_WIDTH, CROSS_CHECKED_UP_TO, LpBracket, LpCheck};
+pub use bracket::{BRACKET_TOLERANCE, BRACKET_WIDTH, CROSS_CHECKED_UP_TO, LpBracket, LpCheck};
 
 use crate::model::{Aim, Problem, Solution};
 use dual::Residuals;
@@ -28,10 +28,6 @@ pub const STATIONARITY_TOLERANCE: f64 = 1e-9;
 /// Largest gap, and largest price × slack, relative to the size of the returns. A gap is of
 /// second order in an error of the spends, so it is far below this wherever the others hold.
 pub const GAP_TOLERANCE: f64 = 1e-9;
-
-/// By how much the total may lie outside the linear programmes' bracket, relative to the size of
-/// the returns: what the LP solver's own tolerance leaves.
-pub const BRACKET_TOLERANCE: f64 = 1e-7;
 
 /// Whether the plan is proven best.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -89,10 +85,7 @@ pub fn certify(problem: &Problem, solution: &Solution, cross_check: CrossCheck) 
     let bound = total + problem.aim().sign() * residuals.gap;
     let lp = bracket::cross_check(problem, solution, cross_check);
     let within_bracket = match &lp {
-        LpCheck::Bracketed(bracket) => {
-            let room = BRACKET_TOLERANCE * residuals.scale;
-            bracket.lower - room <= total && total <= bracket.upper + room
-        }
+        LpCheck::Bracketed(bracket) => bracket.encloses,
         LpCheck::LeftOut { .. } => true,
         LpCheck::Failed { .. } => false,
     };
