@@ -1,5 +1,7 @@
 //! The problem: the only validated form of a plan.
 
+use rayon::prelude::*;
+
 use super::error::{Field, Misshapen, ModelError};
 use super::{Activity, Constraint, UsePerUnit};
 use crate::curves::{Curve, ReturnCurve, Shape};
@@ -55,9 +57,16 @@ impl Problem {
         if activities.is_empty() {
             faults.push(ModelError::NoActivities);
         }
-        for (i, activity) in activities.iter().enumerate() {
-            check_activity(aim, i, activity, &mut faults);
-        }
+        faults.par_extend(
+            activities
+                .par_iter()
+                .enumerate()
+                .flat_map_iter(|(i, activity)| {
+                    let mut faults = Vec::new();
+                    check_activity(aim, i, activity, &mut faults);
+                    faults
+                }),
+        );
         for (k, constraint) in constraints.iter().enumerate() {
             check_constraint(k, constraint, activities.len(), &mut faults);
         }

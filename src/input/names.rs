@@ -1,0 +1,137 @@
+//! Names that must differ from one another, whatever their case and spaces.
+
+use std::borrow::Cow;
+use std::hash::{BuildHasher, Hasher};
+
+use rayon::prelude::*;
+use rustc_hash::{FxBuildHasher, FxHasher};
+
+/// Names of a row that adds up the others.
+const TOTALS: [&str; 8] = [
+    "total",
+    "totals",
+    "sum",
+    "subtotal",
+    "sub-total",
+    "grand total",
+    "overall",
+    "all activities",
+];
+
+/// The name without the spaces round it, no-break and zero-width ones among them.
+pub(super) fn trimmed(name: &str) -> &str {
+    name.trim_matches(|character: char| {
+        character.is_whitespace() || matches!(character, '\u{200b}' | '\u{feff}')
+    })
+}
+
+/// Whether a row of this name adds up the others.
+pub(super) fn is_total(name: &str) -> bool {
+    let first = name.as_bytes().first();
+    if !matches!(
+        first,
+        Some(b'T' | b't' | b'S' | b's' | b'G' | b'g' | b'O' | b'o' | b'A' | b'a')
+    ) {
+        return false;
+    }
+    TOTALS.contains(&folded(name).trim_end_matches([':', '.']))
+}
+
+/// The name as it is compared: small letters, every run of spaces one space.
+fn folded(name: &str) -> Cow<'_, str> {
+    let plain = name
+        .bytes()
+        .all(|byte| byte.is_ascii_graphic() && !byte.is_ascii_uppercase());
+    if plain {
+        return Cow::Borrowed(name);
+    }
+    Cow::Owned(
+        name.split_whitespace()
+            .collect::<Vec<_>>()
+            .join(" ")
+            .to_lowercase(),
+    )
+}
+
+fn hash_of(name: &str) -> u64 {
+    let mut hasher: FxHasher = FxBuildHasher.build_hasher();
+    let single_spaced = !name.as_bytes().windows(2).any(|pair| pair == b"  ");
+    if name.is_ascii() && single_spaced && !name.bytes().any(|byte| byte.is_ascii_control()) {
+        // The same as below without the copy. Eight bytes a step.
+        let mut lower = [0; 8];
+        for chunk in name.as_bytes().chunks(8) {
+            let lower = &mut lower[..chunk.len()];
+            lower.copy_from_slice(chunk);
+            lower.make_ascii_lowercase();
+            hasher.write(lower);
+        }
+    } else {
+        for chunk in folded(name).as_bytes().chunks(8) {
+            hasher.write(chunk);
+        }
+    }
+    hasher.finish()
+}
+
+/// Pairs of equal names: the index of the first and of each later one, in order.
+pub(super) fn repeated<'n>(
+    count: usize,
+    name: impl Fn(usize) -> &'n str + Sync,
+) -> Vec<(usize, usize)> {
+    let mut by_hash: Vec<(u64, u32)> = (0..count as u32)
+        .into_par_iter()
+        .map(|i| (hash_of(name(i as usize)), i))
+        .collect();
+    by_hash.par_sort_unstable();
+    let mut repeated = Vec::new();
+    for alike in by_hash
+        .chunk_by(|one, other| one.0 == other.0)
+        .filter(|alike| alike.len() > 1)
+    {
+        // Names that share a hash by chance are told apart here.
+        let mut first: Vec<usize> = Vec::new();
+        for i in alike.iter().map(|&(_, i)| i as usize) {
+            match first
+                .iter()
+                .find(|&&earlier| folded(name(earlier)) == folded(name(i)))
+            {
+                Some(&earlier) => repeated.push((earlier, i)),
+                None => first.push(i),
+            }
+        }
+    }
+    repeated.sort_unstable_by_key(|&(_, again)| again);
+    repeated
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn names_that_differ_in_case_and_spaces_alone_are_the_same() {
+        let names = [
+            "Dune repair",
+            "dune  repair",
+            "Dune\u{a0}repair",
+            "Dunes",
+            "DUNE REPAIR",
+            "Über",
+            "über",
+        ];
+        assert_eq!(
+            repeated(names.len(), |i| names[i]),
+            [(0, 1), (0, 2), (0, 4), (5, 6)]
+        );
+    }
+
+    #[test]
+    fn rows_of_sums_are_told_by_their_names() {
+        assert!(["Total", "SUM:", "Grand  total"].into_iter().all(is_total));
+        assert!(
+            !["Total flood wall", "summit path", "garden"]
+                .into_iter()
+                .any(is_total)
+        );
+    }
+}

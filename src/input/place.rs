@@ -1,0 +1,176 @@
+//! Where a fault stands: the second, slow look at a file.
+
+use std::ops::Range;
+
+/// Characters of a line that an excerpt shows on either side of its cell.
+const EXCERPT_MARGIN: usize = 60;
+
+/// Characters of a cell that an excerpt shows at the most.
+const EXCERPT_CELL: usize = 80;
+
+/// A place in a file.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Place {
+    /// The file, as it was named.
+    pub file: String,
+    /// Line, from 1.
+    pub line: Option<usize>,
+    /// Name of the column, or of the key.
+    pub column: Option<String>,
+    /// The line's text with the cell in it.
+    pub excerpt: Option<Excerpt>,
+}
+
+/// A line of a file, cut to a readable length round the cell.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Excerpt {
+    /// The text.
+    pub text: String,
+    /// The cell's bytes in it.
+    pub cell: Range<usize>,
+}
+
+impl Place {
+    /// A whole file.
+    pub fn file(file: &str) -> Self {
+        Self {
+            file: file.to_owned(),
+            line: None,
+            column: None,
+            excerpt: None,
+        }
+    }
+
+    /// The bytes `cell` of a file's text.
+    pub fn in_text(file: &str, text: &str, cell: Range<usize>, column: Option<&str>) -> Self {
+        let start = floor_boundary(text, cell.start);
+        let line_start = text[..start].rfind('\n').map_or(0, |newline| newline + 1);
+        let line_end = text[start..]
+            .find(['\n', '\r'])
+            .map_or(text.len(), |length| start + length);
+        let end = floor_boundary(text, cell.end.min(line_end).max(start));
+        let line = 1 + text.as_bytes()[..line_start]
+            .iter()
+            .filter(|&&byte| byte == b'\n')
+            .count();
+        Self {
+            file: file.to_owned(),
+            line: Some(line),
+            column: column.map(str::to_owned),
+            excerpt: Some(Excerpt::cut(
+                &text[line_start..line_end],
+                start - line_start..end - line_start,
+            )),
+        }
+    }
+
+    /// What places are sorted by.
+    pub(super) fn order(&self) -> (&str, usize, usize) {
+        let within = self
+            .excerpt
+            .as_ref()
+            .map_or(0, |excerpt| excerpt.cell.start);
+        (&self.file, self.line.unwrap_or(0), within)
+    }
+}
+
+impl Excerpt {
+    /// The line with what is far from the cell cut away, and control characters made visible.
+    fn cut(line: &str, cell: Range<usize>) -> Self {
+        let before: Vec<char> = line[..cell.start]
+            .chars()
+            .rev()
+            .take(EXCERPT_MARGIN + 1)
+            .collect();
+        let inside: Vec<char> = line[cell.clone()].chars().take(EXCERPT_CELL + 1).collect();
+        let after: Vec<char> = line[cell.end..].chars().take(EXCERPT_MARGIN + 1).collect();
+        let mut text = String::new();
+        if before.len() > EXCERPT_MARGIN {
+            text.push('…');
+        }
+        text.extend(
+            before
+                .iter()
+                .take(EXCERPT_MARGIN)
+                .rev()
+                .copied()
+                .map(visible),
+        );
+        let start = text.len();
+        text.extend(inside.iter().take(EXCERPT_CELL).copied().map(visible));
+        if inside.len() > EXCERPT_CELL {
+            text.push('…');
+        }
+        let end = text.len();
+        if inside.len() <= EXCERPT_CELL {
+            text.extend(after.iter().take(EXCERPT_MARGIN).copied().map(visible));
+            if after.len() > EXCERPT_MARGIN {
+                text.push('…');
+            }
+        }
+        // An empty cell is pointed at by the place after it.
+        if start == end && end == text.len() {
+            text.push(' ');
+        }
+        Self {
+            cell: start..end.max(start + text[start..].chars().next().map_or(0, char::len_utf8)),
+            text,
+        }
+    }
+}
+
+/// A character as it can stand in an excerpt.
+fn visible(character: char) -> char {
+    match character {
+        '\t' => ' ',
+        control if control.is_control() => '\u{fffd}',
+        other => other,
+    }
+}
+
+fn floor_boundary(text: &str, mut at: usize) -> usize {
+    at = at.min(text.len());
+    while !text.is_char_boundary(at) {
+        at -= 1;
+    }
+    at
+}
+
+/// The bytes of cell `column` of the record that begins at `record`; an empty range at the end
+/// of the record where it has fewer cells. Follows the quoting of RFC 4180.
+pub(super) fn cell_of(text: &str, record: usize, column: usize, separator: u8) -> Range<usize> {
+    let bytes = text.as_bytes();
+    let mut at = record;
+    while at < bytes.len() && matches!(bytes[at], b'\n' | b'\r') {
+        at += 1;
+    }
+    for _ in 0..column {
+        at = cell_end(bytes, at, separator);
+        if bytes.get(at) != Some(&separator) {
+            return at..at;
+        }
+        at += 1;
+    }
+    at..cell_end(bytes, at, separator)
+}
+
+/// Where the cell that begins at `at` ends: at a separator, a line's end or the file's end.
+fn cell_end(bytes: &[u8], mut at: usize, separator: u8) -> usize {
+    if bytes.get(at) == Some(&b'"') {
+        at += 1;
+        while at < bytes.len() {
+            if bytes[at] == b'"' {
+                if bytes.get(at + 1) != Some(&b'"') {
+                    at += 1;
+                    break;
+                }
+                at += 1;
+            }
+            at += 1;
+        }
+    }
+    while at < bytes.len() && bytes[at] != separator && !matches!(bytes[at], b'\n' | b'\r') {
+        at += 1;
+    }
+    at
+}

@@ -1,0 +1,232 @@
+//! plan.toml: the names, the aim and the limit of a plan, and where its tables are.
+
+use std::ops::Range;
+use std::path::{Path, PathBuf};
+
+use toml::de::{DeTable, DeValue};
+
+use super::amount::parse_amount;
+use super::encoding::decode;
+use super::faults::Diagnostics;
+use super::header::nearest;
+use super::notes::Note;
+use super::place::Place;
+use crate::model::{Aim, Labels};
+
+const KEYS: [&str; 9] = [
+    "title",
+    "aim",
+    "budget",
+    "require",
+    "money",
+    "return_unit",
+    "period",
+    "activities",
+    "points",
+];
+
+/// What a plan file says.
+#[derive(Debug, Default)]
+pub(super) struct PlanFile {
+    pub labels: Labels,
+    pub aim: Option<Aim>,
+    pub budget: Option<f64>,
+    pub require: Option<f64>,
+    pub activities: PathBuf,
+    pub points: Option<PathBuf>,
+    pub notes: Vec<Note>,
+    /// Where `require`, or else `budget`, stands.
+    pub limit_place: Option<Place>,
+}
+
+/// Reads a plan file; the paths in it are relative to the folder that it lies in.
+///
+/// # Errors
+/// Every fault of the file.
+pub(super) fn read_plan_file(
+    path: &Path,
+    file: &str,
+    bytes: &[u8],
+) -> Result<PlanFile, Diagnostics> {
+    let (text, decoded) = decode(file, bytes)?;
+    let table = DeTable::parse(&text).map_err(|fault| {
+        let span = fault.span().unwrap_or(0..0);
+        Diagnostics::of(
+            "a plan file that cannot be read",
+            Place::in_text(file, &text, span, None),
+            fault
+                .message()
+                .lines()
+                .next()
+                .unwrap_or("this is not TOML")
+                .to_owned(),
+            "write one key = value a line; texts stand in double quotes",
+        )
+    })?;
+    let mut reader = Reader {
+        file,
+        text: &text,
+        faults: Diagnostics::default(),
+        notes: decoded.into_iter().collect(),
+    };
+    let mut plan = PlanFile::default();
+    let folder = path.parent().unwrap_or(Path::new(""));
+    let mut activities = None;
+    for (key, value) in table.get_ref() {
+        let (name, span) = (key.get_ref().as_ref(), value.span());
+        let value = value.get_ref();
+        match name {
+            "title" => plan.labels.title = reader.text_of(name, value, span),
+            "money" => plan.labels.money = reader.text_of(name, value, span),
+            "return_unit" => plan.labels.return_unit = reader.text_of(name, value, span),
+            "period" => plan.labels.period = reader.period_of(value, span),
+            "aim" => plan.aim = reader.aim_of(value, span),
+            "budget" => {
+                plan.limit_place
+                    .get_or_insert_with(|| reader.place(span.clone(), name));
+                plan.budget = reader.amount_of(name, value, span);
+            }
+            "require" => {
+                plan.limit_place = Some(reader.place(span.clone(), name));
+                plan.require = reader.amount_of(name, value, span);
+            }
+            "activities" => activities = reader.text_of(name, value, span),
+            "points" => {
+                plan.points = reader
+                    .text_of(name, value, span)
+                    .map(|name| folder.join(name))
+            }
+            unknown => reader.refuse_key(unknown, key.span()),
+        }
+    }
+    if plan.budget.is_some() && plan.require.is_some() {
+        let place = plan
+            .limit_place
+            .clone()
+            .unwrap_or_else(|| Place::file(file));
+        reader.faults.add(
+            "two limits",
+            || place,
+            "a plan has a budget or a requirement, not both",
+            "delete one of budget and require",
+        );
+    }
+    match activities {
+        Some(name) => plan.activities = folder.join(name),
+        None if reader.faults.is_empty() => reader.faults.add(
+            "a plan without activities",
+            || Place::file(file),
+            format!("{file} does not name its table of activities"),
+            "add a line such as activities = \"activities.csv\"",
+        ),
+        None => {}
+    }
+    if !reader.faults.is_empty() {
+        return Err(reader.faults);
+    }
+    plan.notes = reader.notes;
+    Ok(plan)
+}
+
+struct Reader<'a> {
+    file: &'a str,
+    text: &'a str,
+    faults: Diagnostics,
+    notes: Vec<Note>,
+}
+
+impl Reader<'_> {
+    fn place(&self, span: Range<usize>, key: &str) -> Place {
+        Place::in_text(self.file, self.text, span, Some(key))
+    }
+
+    fn refuse(&mut self, key: &str, span: Range<usize>, what: String, mend: &str) {
+        let place = self.place(span, key);
+        self.faults.add("a value at fault", || place, what, mend);
+    }
+
+    fn refuse_key(&mut self, key: &str, span: Range<usize>) {
+        let what = format!("a plan file has no key named {key}");
+        let mend = if key == "constraints" {
+            "this version takes one budget or one requirement".to_owned()
+        } else {
+            match nearest(key, KEYS.into_iter()) {
+                Some(meant) => format!("did you mean {meant}?"),
+                None => format!("the keys are {}", KEYS.join(", ")),
+            }
+        };
+        let place = self.place(span, key);
+        self.faults.add("an unknown key", || place, what, mend);
+    }
+
+    fn text_of(&mut self, key: &str, value: &DeValue, span: Range<usize>) -> Option<String> {
+        match value {
+            DeValue::String(text) => Some(text.trim().to_owned()).filter(|text| !text.is_empty()),
+            _ => {
+                self.refuse(
+                    key,
+                    span,
+                    format!("{key} must be a text"),
+                    "put it in double quotes",
+                );
+                None
+            }
+        }
+    }
+
+    /// A period may be written as the bare number of a year.
+    fn period_of(&mut self, value: &DeValue, span: Range<usize>) -> Option<String> {
+        match value {
+            DeValue::Integer(_) => Some(self.text[span].to_owned()),
+            _ => self.text_of("period", value, span),
+        }
+    }
+
+    fn aim_of(&mut self, value: &DeValue, span: Range<usize>) -> Option<Aim> {
+        let written = self.text_of("aim", value, span.clone())?;
+        let aim = [Aim::Maximise, Aim::Minimise]
+            .into_iter()
+            .find(|aim| aim.name() == written);
+        if aim.is_none() {
+            let what = format!("\"{written}\" is no aim");
+            self.refuse("aim", span, what, "write \"maximise\" or \"minimise\"");
+        }
+        aim
+    }
+
+    /// A number, or a text that is an amount without doubt.
+    fn amount_of(&mut self, key: &str, value: &DeValue, span: Range<usize>) -> Option<f64> {
+        let found = match value {
+            DeValue::Integer(_) | DeValue::Float(_) => {
+                parse_amount(&self.text[span.clone()].replace('_', ""))
+            }
+            DeValue::String(text) => parse_amount(text),
+            _ => {
+                self.refuse(
+                    key,
+                    span,
+                    format!("{key} must be a number"),
+                    "write plain digits",
+                );
+                return None;
+            }
+        };
+        match found {
+            Ok(amount) => {
+                if let Some(how) = amount.written {
+                    let written = self.text[span].trim_matches('"');
+                    self.notes.push(Note::reading(format!(
+                        "{}: read {how} in {key}, \"{written}\"",
+                        self.file
+                    )));
+                }
+                Some(amount.value)
+            }
+            Err(fault) => {
+                let mend = fault.mend();
+                self.refuse(key, span, fault.to_string(), &mend);
+                None
+            }
+        }
+    }
+}

@@ -1,0 +1,271 @@
+//! A table whose records remember where they stand.
+
+use std::borrow::Cow;
+use std::ops::Range;
+
+use csv::{ByteRecord, ReaderBuilder};
+
+use super::dialect::Dialect;
+use super::encoding::decode;
+use super::faults::Diagnostics;
+use super::notes::Note;
+use super::place::{Place, cell_of};
+
+/// Bytes of a line beyond which this is no table of a person's making.
+const LONGEST_LINE: usize = 1 << 20;
+
+/// Bytes of text that one part of a parallel reading holds at the least.
+const PART: usize = 1 << 20;
+
+/// The text of a table, its dialect and its header.
+pub(super) struct Table<'a> {
+    /// The file, as it was named.
+    pub file: String,
+    /// All of its text, without a byte order mark.
+    pub text: Cow<'a, str>,
+    /// How it is written.
+    pub dialect: Dialect,
+    /// The names of its columns: trimmed, in small letters, spaces as underscores.
+    pub header: Vec<String>,
+    /// What there is to say of how it was read.
+    pub notes: Vec<Note>,
+    /// Where the rows begin.
+    body: usize,
+}
+
+impl<'a> Table<'a> {
+    /// Decodes a table and reads its header; `key_column` is one that it must have.
+    ///
+    /// # Errors
+    /// Faults of the file as a whole: no text, no rows, a line without end, an open quote, a
+    /// column without a name or with another's.
+    pub(super) fn open(file: &str, bytes: &'a [u8], key_column: &str) -> Result<Self, Diagnostics> {
+        let (text, decoded) = decode(file, bytes)?;
+        let mut notes: Vec<Note> = decoded.into_iter().collect();
+        if text.trim().is_empty() {
+            return Err(Diagnostics::of(
+                "an empty file",
+                Place::file(file),
+                format!("{file} is empty"),
+                format!("the first row names the columns; \"{key_column}\" is one of them"),
+            ));
+        }
+        let first_line = memchr::memchr(b'\n', text.as_bytes()).unwrap_or(text.len());
+        if first_line > LONGEST_LINE {
+            return Err(too_long(file, &text, 0));
+        }
+        check_quotes(file, &text)?;
+        let dialect = Dialect::of(&text, key_column);
+        if dialect.separator != b',' {
+            let mut said = format!(
+                "{file}: cells are separated by {}",
+                dialect.separator_name()
+            );
+            if dialect.decimal_comma {
+                said.push_str(", and a comma is the decimal point");
+            }
+            notes.push(Note::reading(said));
+        }
+        let mut table = Self {
+            file: file.to_owned(),
+            text,
+            dialect,
+            header: Vec::new(),
+            notes,
+            body: 0,
+        };
+        table.read_header()?;
+        Ok(table)
+    }
+
+    /// Reads the first record as the names of the columns.
+    fn read_header(&mut self) -> Result<(), Diagnostics> {
+        let mut first = None;
+        let whole = 0..self.text.len();
+        self.records(whole, |record, start, end| {
+            first = Some((record.clone(), start, end));
+            false
+        })?;
+        let Some((record, start, end)) = first else {
+            return Ok(());
+        };
+        let mut faults = Diagnostics::default();
+        let mut header: Vec<String> = Vec::with_capacity(record.len());
+        let mut renamed = 0;
+        for (column, cell) in record.iter().enumerate() {
+            let written = String::from_utf8_lossy(cell);
+            let name = written
+                .split(|character: char| character.is_whitespace() || character == '\u{feff}')
+                .filter(|word| !word.is_empty())
+                .collect::<Vec<_>>()
+                .join("_")
+                .to_lowercase();
+            renamed += usize::from(name != written);
+            let place = || self.place(start, column, Some(&name));
+            if name.is_empty() {
+                faults.add(
+                    "a column without a name",
+                    || self.place(start, column, Some("no name")),
+                    format!("column {} has no name", column + 1),
+                    "name it, or delete the column",
+                );
+            } else if let Some(earlier) = header.iter().position(|known| *known == name) {
+                faults.add(
+                    "a column twice",
+                    place,
+                    format!(
+                        "the columns {} and {} are both named \"{name}\"",
+                        earlier + 1,
+                        column + 1
+                    ),
+                    "rename or delete one of them",
+                );
+            }
+            header.push(name);
+        }
+        if !faults.is_empty() {
+            return Err(faults);
+        }
+        if renamed > 0 {
+            self.notes.push(Note::reading(format!(
+                "{}: column names are read in small letters with underscores: {}",
+                self.file,
+                header.join(", ")
+            )));
+        }
+        self.header = header;
+        self.body = end;
+        Ok(())
+    }
+
+    /// The rows' text in parts that begin with a record, so that they can be read side by side.
+    /// A text with quotes is one part, since a quoted cell may hold a line's end.
+    pub(super) fn parts(&self) -> Vec<Range<usize>> {
+        let bytes = self.text.as_bytes();
+        if memchr::memchr(b'"', bytes).is_some() {
+            return std::iter::once(self.body..bytes.len()).collect();
+        }
+        let mut parts = Vec::new();
+        let mut start = self.body;
+        while start < bytes.len() {
+            let soonest = (start + PART).min(bytes.len());
+            let end = memchr::memchr(b'\n', &bytes[soonest..])
+                .map_or(bytes.len(), |newline| soonest + newline + 1);
+            parts.push(start..end);
+            start = end;
+        }
+        parts
+    }
+
+    /// Reads the records of a part in turn, each with the bytes where it begins and ends, until
+    /// `each` says false. Rows with nothing in them are passed over.
+    pub(super) fn records(
+        &self,
+        part: Range<usize>,
+        mut each: impl FnMut(&ByteRecord, usize, usize) -> bool,
+    ) -> Result<(), Diagnostics> {
+        let mut reader = ReaderBuilder::new()
+            .has_headers(false)
+            .flexible(true)
+            .delimiter(self.dialect.separator)
+            .from_reader(&self.text.as_bytes()[part.clone()]);
+        let mut record = ByteRecord::new();
+        loop {
+            let start = part.start + reader.position().byte() as usize;
+            match reader.read_byte_record(&mut record) {
+                Ok(true) => {}
+                Ok(false) => return Ok(()),
+                Err(fault) => {
+                    return Err(Diagnostics::of(
+                        "an unreadable row",
+                        self.place(start, 0, None),
+                        fault.to_string(),
+                        "save the table as CSV in UTF-8",
+                    ));
+                }
+            }
+            let end = part.start + reader.position().byte() as usize;
+            if end - start > LONGEST_LINE {
+                return Err(too_long(&self.file, &self.text, start));
+            }
+            let blank = record.as_slice().iter().all(u8::is_ascii_whitespace);
+            if !blank && !each(&record, start, end) {
+                return Ok(());
+            }
+        }
+    }
+
+    /// The place of a cell of the record that begins at byte `start`.
+    pub(super) fn place(&self, start: usize, column: usize, name: Option<&str>) -> Place {
+        let cell = cell_of(&self.text, start, column, self.dialect.separator);
+        Place::in_text(&self.file, &self.text, cell, name)
+    }
+
+    /// The place of a whole record.
+    pub(super) fn row_place(&self, start: usize) -> Place {
+        let first = cell_of(&self.text, start, 0, self.dialect.separator).start;
+        let line = memchr::memchr2(b'\n', b'\r', &self.text.as_bytes()[first..]);
+        let end = line.map_or(self.text.len(), |length| first + length);
+        Place::in_text(&self.file, &self.text, first..end, Some("this row"))
+    }
+
+    /// Which column a name stands for.
+    pub(super) fn column(&self, name: &str) -> Option<usize> {
+        self.header.iter().position(|known| known == name)
+    }
+}
+
+fn too_long(file: &str, text: &str, start: usize) -> Diagnostics {
+    let megabytes = LONGEST_LINE >> 20;
+    Diagnostics::of(
+        "a line without end",
+        Place::in_text(file, text, start..start + 1, None),
+        format!("this line is longer than {megabytes} MB, so this is no table"),
+        "save the table as CSV, one row a line",
+    )
+}
+
+/// Refuses a quote that is never closed, and text behind a closed one: what a cell holds would
+/// be a guess.
+fn check_quotes(file: &str, text: &str) -> Result<(), Diagnostics> {
+    let bytes = text.as_bytes();
+    let mut at = 0;
+    while let Some(found) = memchr::memchr(b'"', &bytes[at..]) {
+        let open = at + found;
+        let begins_cell =
+            open == 0 || matches!(bytes[open - 1], b',' | b';' | b'\t' | b'\n' | b'\r');
+        if !begins_cell {
+            at = open + 1;
+            continue;
+        }
+        let mut close = open + 1;
+        loop {
+            match memchr::memchr(b'"', &bytes[close..]) {
+                None => {
+                    return Err(Diagnostics::of(
+                        "an open quote",
+                        Place::in_text(file, text, open..open + 1, None),
+                        "this quote is never closed",
+                        "close it, or delete it",
+                    ));
+                }
+                Some(next) if bytes.get(close + next + 1) == Some(&b'"') => close += next + 2,
+                Some(next) => {
+                    close += next;
+                    break;
+                }
+            }
+        }
+        let after = bytes.get(close + 1);
+        if !matches!(after, None | Some(b',' | b';' | b'\t' | b'\n' | b'\r')) {
+            return Err(Diagnostics::of(
+                "text behind a quote",
+                Place::in_text(file, text, open..close + 2, None),
+                "there is text behind the closing quote of this cell",
+                "put the whole cell in quotes and double the quotes inside it",
+            ));
+        }
+        at = close + 1;
+    }
+    Ok(())
+}
