@@ -1,0 +1,252 @@
+//! The plan beside other splits: today's, today's scaled to the same limit, and an even one.
+
+use crate::model::{Aim, Constraint, Problem, Sense};
+use crate::numeric::block_sums;
+
+/// Another way to split.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum SplitKind {
+    /// What every activity has today.
+    Current,
+    /// Today's spends times one factor, within floors and caps.
+    Proportional,
+    /// The same spend for all, within floors and caps.
+    Even,
+}
+
+impl SplitKind {
+    /// The name in tables.
+    pub fn name(self) -> &'static str {
+        match self {
+            SplitKind::Current => "today's split",
+            SplitKind::Proportional => "today's, scaled",
+            SplitKind::Even => "an even split",
+        }
+    }
+
+    /// The name in JSON and CSV.
+    pub fn key(self) -> &'static str {
+        match self {
+            SplitKind::Current => "current",
+            SplitKind::Proportional => "proportional to current",
+            SplitKind::Even => "even",
+        }
+    }
+}
+
+/// What another split comes to.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Split {
+    /// How it splits.
+    pub kind: SplitKind,
+    /// What it comes to, or why it cannot be made.
+    pub outcome: Result<SplitOutcome, NoSplit>,
+}
+
+/// A split that was made.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct SplitOutcome {
+    /// What it uses, in units of the limit.
+    pub used: f64,
+    /// Its total, in the common unit.
+    pub total: f64,
+    /// By how much the plan is better: more under maximise, less under minimise.
+    pub gain: f64,
+    /// That gain as a share of the split's own total; `None` where that is zero.
+    pub gain_share: Option<f64>,
+    /// Whether it uses what the plan may use, to a relative 1e-9.
+    pub same_limit: bool,
+    /// Activities that it leaves outside their floor or cap.
+    pub outside_bounds: usize,
+}
+
+/// Why a split cannot be made.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum NoSplit {
+    /// Nothing is known of today.
+    CurrentUnknown,
+    /// Today's spend is not known for some.
+    CurrentIncomplete {
+        /// How many.
+        missing: usize,
+    },
+    /// Today's spend is zero everywhere.
+    CurrentZero,
+    /// No factor meets the limit within floors and caps.
+    OutOfReach,
+    /// Some activity would stand at a spend without a finite return.
+    NoFiniteTotal,
+}
+
+impl NoSplit {
+    /// The fault in JSON and CSV.
+    pub fn name(self) -> &'static str {
+        match self {
+            NoSplit::CurrentUnknown => "current spend unknown",
+            NoSplit::CurrentIncomplete { .. } => "current spend incomplete",
+            NoSplit::CurrentZero => "current spend zero",
+            NoSplit::OutOfReach => "limit out of reach",
+            NoSplit::NoFiniteTotal => "no finite total",
+        }
+    }
+}
+
+/// Relative difference up to which two uses are called the same: far above the rounding of a
+/// sum, far below what anyone would see in a budget.
+const SAME_USE: f64 = 1e-9;
+
+/// Today's split, beside a plan that reaches `total` under constraint 0.
+pub fn compare_with_current(problem: &Problem, total: f64) -> Split {
+    let missing = currents_missing(problem);
+    let outcome = if missing == problem.activities().len() {
+        Err(NoSplit::CurrentUnknown)
+    } else if missing > 0 {
+        Err(NoSplit::CurrentIncomplete { missing })
+    } else {
+        value_split(problem, total, |i| current_of(problem, i))
+    };
+    Split {
+        kind: SplitKind::Current,
+        outcome,
+    }
+}
+
+/// All the other splits, in the order of the table.
+pub fn compare_splits(problem: &Problem, total: f64) -> Vec<Split> {
+    let current = compare_with_current(problem, total);
+    let proportional = match current.outcome {
+        Err(unknown @ (NoSplit::CurrentUnknown | NoSplit::CurrentIncomplete { .. })) => {
+            Err(unknown)
+        }
+        _ if problem
+            .activities()
+            .iter()
+            .all(|activity| activity.current == Some(0.0)) =>
+        {
+            Err(NoSplit::CurrentZero)
+        }
+        _ => scale_split(problem, total, |i| current_of(problem, i)),
+    };
+    vec![
+        current,
+        Split {
+            kind: SplitKind::Proportional,
+            outcome: proportional,
+        },
+        Split {
+            kind: SplitKind::Even,
+            outcome: scale_split(problem, total, |_| 1.0),
+        },
+    ]
+}
+
+fn currents_missing(problem: &Problem) -> usize {
+    let activities = problem.activities().iter();
+    activities
+        .filter(|activity| activity.current.is_none())
+        .count()
+}
+
+fn current_of(problem: &Problem, i: usize) -> f64 {
+    problem.activities()[i].current.unwrap_or(0.0)
+}
+
+/// Finds the factor s with Σ a_i·clamp(s·part_i, floor_i, cap_i) = limit and values the split.
+fn scale_split(
+    problem: &Problem,
+    total: f64,
+    part: impl Fn(usize) -> f64 + Sync,
+) -> Result<SplitOutcome, NoSplit> {
+    let Some(constraint) = problem.constraints().first() else {
+        return Err(NoSplit::OutOfReach);
+    };
+    let spend = |scale: f64, i: usize| {
+        let activity = &problem.activities()[i];
+        let wanted = match part(i) {
+            0.0 => 0.0,
+            part => scale * part,
+        };
+        wanted.max(activity.floor).min(activity.cap)
+    };
+    let used = |scale: f64| used_by(problem, constraint, |i| spend(scale, i));
+    let (limit, reach) = (constraint.limit, used(f64::INFINITY));
+    let scale = if reach <= limit {
+        let meets = constraint.sense == Sense::AtMost || is_same_use(reach, limit);
+        meets.then_some(f64::INFINITY)
+    } else {
+        factor_that_meets(limit, used)
+    };
+    let scale = scale.ok_or(NoSplit::OutOfReach)?;
+    value_split(problem, total, |i| spend(scale, i))
+}
+
+fn is_same_use(used: f64, limit: f64) -> bool {
+    (used - limit).abs() <= SAME_USE * limit.abs()
+}
+
+/// The factor s ≥ 0 at which the rising `used(s)` meets `limit`, by bisection to the last bit;
+/// `None` where already `used(0)` is above. `used` must pass `limit` somewhere.
+fn factor_that_meets(limit: f64, used: impl Fn(f64) -> f64) -> Option<f64> {
+    let (mut below, mut above) = (0.0, 1.0);
+    while used(above) < limit {
+        (below, above) = (above, above * 2.0);
+    }
+    loop {
+        let middle = below + (above - below) / 2.0;
+        if middle <= below || above <= middle {
+            return [below, above]
+                .into_iter()
+                .find(|&scale| is_same_use(used(scale), limit));
+        }
+        if used(middle) < limit {
+            below = middle;
+        } else {
+            above = middle;
+        }
+    }
+}
+
+fn used_by(problem: &Problem, constraint: &Constraint, spend: impl Fn(usize) -> f64 + Sync) -> f64 {
+    let [used] = block_sums(problem.activities().len(), |i| {
+        [match spend(i) {
+            0.0 => 0.0,
+            spend => constraint.use_per_unit(i) * spend,
+        }]
+    });
+    used
+}
+
+fn value_split(
+    problem: &Problem,
+    best: f64,
+    spend: impl Fn(usize) -> f64 + Sync,
+) -> Result<SplitOutcome, NoSplit> {
+    let activities = problem.activities();
+    let [total, outside] = block_sums(activities.len(), |i| {
+        let activity = &activities[i];
+        let spend = spend(i);
+        let worth = match activity.weight {
+            0.0 => 0.0,
+            weight => weight * problem.return_at(i, spend),
+        };
+        let outside = spend < activity.floor || activity.cap < spend;
+        [worth, f64::from(u8::from(outside))]
+    });
+    if !total.is_finite() {
+        return Err(NoSplit::NoFiniteTotal);
+    }
+    let constraint = problem.constraints().first();
+    let used = constraint.map_or(0.0, |constraint| used_by(problem, constraint, &spend));
+    let gain = match problem.aim() {
+        Aim::Maximise => best - total,
+        Aim::Minimise => total - best,
+    };
+    Ok(SplitOutcome {
+        used,
+        total,
+        gain,
+        gain_share: (total != 0.0).then(|| gain / total.abs()),
+        same_limit: constraint.is_some_and(|constraint| is_same_use(used, constraint.limit)),
+        outside_bounds: outside as usize,
+    })
+}
