@@ -92,7 +92,12 @@ pub fn difference(value: f64, total: f64, digits: usize) -> String {
 
 /// A share of one in percent, to three digits: `13.2 %`.
 pub fn percent(share: f64) -> String {
-    format!("{} %", figure(share * 100.0, 3))
+    format!("{} %", figure(in_percent(share), 3))
+}
+
+/// A share of one as a number of percent.
+pub fn in_percent(share: f64) -> f64 {
+    share * 100.0
 }
 
 /// How many times one number is another, to two decimals below ten: `1.31×`, `0.80×`, `45×`.

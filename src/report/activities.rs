@@ -97,6 +97,7 @@ impl<'a> ActivityRows<'a> {
             Position::AtFloor => Reason::AtFloor(share),
             Position::Unfunded => Reason::Unfunded(share),
             Position::Between if price == 0.0 => Reason::Saturated,
+            Position::Between if spend != self.spends[i] => Reason::Rounded,
             Position::Between => match share {
                 Some(share) if self.is_at_knot(i, spend) => Reason::AtKnot(share),
                 _ if activity.curve.curvature(spend) == 0.0 => Reason::Straight,
@@ -142,6 +143,8 @@ pub enum Reason {
     Unfunded(Option<f64>),
     /// Nothing more can be earned.
     Saturated,
+    /// The next unit earned the price before the spend was rounded.
+    Rounded,
     /// Floor and cap are the same.
     Fixed,
 }
@@ -171,12 +174,13 @@ impl Why {
                 Aim::Maximise => "earns the price".to_owned(),
                 Aim::Minimise => "costs the price".to_owned(),
             },
-            Reason::Straight => "shares a tie".to_owned(),
+            Reason::Straight => "fills the rest".to_owned(),
             Reason::AtKnot(share) => with("at a knot", Some(share)),
             Reason::AtCap(share) => with("at cap", share),
             Reason::AtFloor(share) => with("at floor", share),
             Reason::Unfunded(share) => with("unfunded", share),
             Reason::Saturated => "saturated".to_owned(),
+            Reason::Rounded => "rounded".to_owned(),
             Reason::Fixed => "fixed".to_owned(),
         }
     }
@@ -184,9 +188,9 @@ impl Why {
 
 impl fmt::Display for Why {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        let verb = match self.aim {
-            Aim::Maximise => "earn",
-            Aim::Minimise => "cost",
+        let (verb, earned) = match self.aim {
+            Aim::Maximise => ("earn", "earned"),
+            Aim::Minimise => ("cost", "cost"),
         };
         let mut with = |position: &str, unit: &str, share: Option<f64>| match share {
             Some(share) => {
@@ -210,6 +214,7 @@ impl fmt::Display for Why {
             Reason::AtFloor(share) => with("at its floor: ", "next", share),
             Reason::Unfunded(share) => with("unfunded: ", "first", share),
             Reason::Saturated => f.write_str("saturated: more would earn nothing"),
+            Reason::Rounded => write!(f, "rounded: the next unit {earned} the price before"),
             Reason::Fixed => f.write_str("floor and cap are the same"),
         }
     }

@@ -95,6 +95,9 @@ impl NoSplit {
 /// sum, far below what anyone would see in a budget.
 const SAME_USE: f64 = 1e-9;
 
+/// Relative difference up to which two totals are the same: what two orders of summing leave.
+const SAME_TOTAL: f64 = 1e-13;
+
 /// Today's split, beside a plan that reaches `total` under constraint 0.
 pub fn compare_with_current(problem: &Problem, total: f64) -> Split {
     let missing = currents_missing(problem);
@@ -238,6 +241,7 @@ fn value_split(
     let constraint = problem.constraints().first();
     let used = constraint.map_or(0.0, |constraint| used_by(problem, constraint, &spend));
     let gain = match problem.aim() {
+        _ if (best - total).abs() <= SAME_TOTAL * best.abs().max(total.abs()) => 0.0,
         Aim::Maximise => best - total,
         Aim::Minimise => total - best,
     };

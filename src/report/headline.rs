@@ -121,17 +121,17 @@ fn against_today(facts: &HeadlineFacts, current: &SplitOutcome) -> String {
     } else {
         format!("today's {}", facts.units.money(current.used))
     };
-    let change = facts.total - current.total;
-    if change.abs() <= SAME_TOTAL * facts.total.abs().max(current.total.abs()) {
+    if current.gain == 0.0 {
         return format!(", the same as {today}");
     }
-    let size = figures::difference(change.abs(), facts.total, TOTAL_DIGITS);
-    let direction = if change > 0.0 { "more" } else { "less" };
+    let size = figures::difference(current.gain.abs(), facts.total, TOTAL_DIGITS);
+    let direction = if facts.total > current.total {
+        "more"
+    } else {
+        "less"
+    };
     format!(", {size} {direction} than {today}")
 }
-
-/// Relative difference of two totals that no one would call a difference.
-const SAME_TOTAL: f64 = 1e-9;
 
 fn next_in_words(facts: &HeadlineFacts) -> Option<String> {
     let constraint = facts.problem.constraints().first()?;

@@ -16,7 +16,7 @@ pub(super) fn reasons(rows: &ActivityRows, units: Units) -> Vec<String> {
         let why = rows.why(i);
         aim = why.aim();
         let (group, share) = match why.reason {
-            Reason::AtPrice | Reason::Saturated => continue,
+            Reason::AtPrice | Reason::Rounded | Reason::Saturated => continue,
             Reason::AtCap(share) => (0, share),
             Reason::AtFloor(share) => (1, share),
             Reason::Unfunded(share) => (2, share),
