@@ -7,9 +7,10 @@ use isomargin::curves::{
 };
 use isomargin::model::{Activity, Aim, Constraint, Labels, ObservedRange, Problem, Solution};
 use isomargin::report::{
-    Findings, Input, NoPlan, Provenance, Report, Rounding, TextOptions, render_activities_table,
-    render_allocation, render_certificate_table, render_comparison_table, render_constraints_table,
-    render_json, render_no_plan_json, render_text,
+    Findings, Input, NoPlan, OtherColumn, Provenance, Reading, Report, Rounding, TextOptions,
+    Understood, render_activities_table, render_allocation, render_certificate_table,
+    render_comparison_table, render_constraints_table, render_json, render_no_plan_json,
+    render_text, render_understood,
 };
 use isomargin::sensitivity::{ConstraintPrice, price_constraints};
 use isomargin::solver::{round_spends, solve};
@@ -569,4 +570,27 @@ fn floors_above_the_budget_are_said_with_the_budget_that_works() {
     assert_eq!(document["status"], "infeasible");
     assert_eq!(document["shortfall"], 1.55e6);
     assert_eq!(document["nearest_limit"], 4.55e6);
+}
+
+#[test]
+fn what_was_read_can_be_checked_line_by_line() {
+    let plan = coast(24e6);
+    let columns = [
+        OtherColumn {
+            name: "district".to_owned(),
+            is_resource: false,
+        },
+        OtherColumn {
+            name: "staff_hours".to_owned(),
+            is_resource: true,
+        },
+    ];
+    let understood = Understood::build(&Reading {
+        labels: &plan.labels,
+        problem: &plan.problem,
+        other_columns: &columns,
+        notes: &plan.notes,
+        provenance: &plan.provenance,
+    });
+    insta::assert_snapshot!("understood", render_understood(&understood, &PIPED));
 }

@@ -23,7 +23,7 @@ pub fn figure(value: f64, digits: usize) -> String {
     if !(1e-6..1e15).contains(&size) {
         let written = format!("{value:.*e}", digits.saturating_sub(1));
         let (mantissa, power) = written.split_once('e').unwrap_or((&written, "0"));
-        return format!("{}e{power}", trimmed(mantissa));
+        return format!("{}e{power}", trimmed(mantissa).replace('-', "−"));
     }
     let before_point = size.log10().floor() as i64 + 1;
     let decimals = usize::try_from(digits as i64 - before_point).unwrap_or(0);

@@ -248,7 +248,8 @@ impl<'a> Report<'a> {
     }
 }
 
-fn title_of(labels: &Labels) -> Option<String> {
+/// Title and period of a plan, as far as they are known.
+pub(super) fn title_of(labels: &Labels) -> Option<String> {
     match (&labels.title, &labels.period) {
         (Some(title), Some(period)) => Some(format!("{title}, {period}")),
         (Some(title), None) => Some(title.clone()),

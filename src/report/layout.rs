@@ -42,8 +42,16 @@ pub(super) enum Side {
 #[derive(Debug)]
 pub(super) struct Table {
     columns: Vec<(String, Side)>,
-    rows: Vec<Vec<String>>,
-    rules_before: Vec<usize>,
+    lines: Vec<Line>,
+}
+
+/// One line of a table's body.
+#[derive(Debug)]
+enum Line {
+    Cells(Vec<String>),
+    /// Words that run across the columns.
+    Across(String),
+    Rule,
 }
 
 impl Table {
@@ -53,25 +61,30 @@ impl Table {
                 .iter()
                 .map(|(name, side)| ((*name).to_owned(), *side))
                 .collect(),
-            rows: Vec::new(),
-            rules_before: vec![0],
+            lines: vec![Line::Rule],
         }
     }
 
     pub(super) fn row(&mut self, cells: Vec<String>) {
-        self.rows.push(cells);
+        self.lines.push(Line::Cells(cells));
     }
 
     /// A rule before the next row.
     pub(super) fn rule(&mut self) {
-        self.rules_before.push(self.rows.len());
+        self.lines.push(Line::Rule);
+    }
+
+    /// Words about the row above, across the columns.
+    pub(super) fn line_below(&mut self, words: String) {
+        self.lines.push(Line::Across(words));
     }
 
     /// The table's lines, indented by `indent`.
     pub(super) fn render(&self, width: usize, indent: usize) -> String {
         let mut widths: Vec<usize> = self.columns.iter().map(|(name, _)| name.width()).collect();
-        for row in &self.rows {
-            for (widest, cell) in widths.iter_mut().zip(row) {
+        for line in &self.lines {
+            let Line::Cells(cells) = line else { continue };
+            for (widest, cell) in widths.iter_mut().zip(cells) {
                 *widest = (*widest).max(cell.width());
             }
         }
@@ -84,13 +97,17 @@ impl Table {
         let mut out = String::new();
         let header: Vec<String> = self.columns.iter().map(|(name, _)| name.clone()).collect();
         self.push_row(&mut out, &header, &widths, indent);
-        for (index, row) in self.rows.iter().enumerate() {
-            if self.rules_before.contains(&index) {
-                out.push_str(&" ".repeat(indent));
-                out.push_str(&"─".repeat(whole));
-                out.push('\n');
+        let margin = " ".repeat(indent);
+        for line in &self.lines {
+            match line {
+                Line::Cells(cells) => self.push_row(&mut out, cells, &widths, indent),
+                Line::Rule => out.push_str(&format!("{margin}{}\n", "─".repeat(whole))),
+                Line::Across(words) => {
+                    let start = indent + GAP;
+                    let words = wrapped(words, width, start, start);
+                    out.push_str(&format!("{}{words}\n", " ".repeat(start)));
+                }
             }
-            self.push_row(&mut out, row, &widths, indent);
         }
         out
     }

@@ -16,6 +16,7 @@ mod reasons;
 mod rounding;
 mod tables;
 mod text;
+mod understood;
 mod wording;
 
 pub use activities::{ActivityRow, ActivityRows, Reason, Why};
@@ -30,5 +31,6 @@ pub use tables::{
     render_activities_table, render_allocation, render_certificate_table, render_comparison_table,
     render_constraints_table,
 };
-pub use text::{TextOptions, render_summary, render_text};
+pub use text::{TextOptions, render_summary, render_text, render_understood};
+pub use understood::{OtherColumn, ReadActivity, Reading, Understood};
 pub use wording::{Units, activities};

@@ -64,7 +64,7 @@ fn starts(aim: Aim, unit: &str, straight: usize) -> [String; 6] {
     let tie = if straight > 1 {
         format!("Straight at the price, so that any division among them {earn}s the same")
     } else {
-        format!("Straight at the price, taking what the others leave")
+        "Straight at the price, taking what the others leave".to_owned()
     };
     [
         format!("At the cap, where the next {unit} would {earn} {cap} than the price"),

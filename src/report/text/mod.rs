@@ -1,9 +1,12 @@
 //! The report as plain text for a terminal or a file.
 
 mod tables;
+mod understood;
 mod words;
 
-use super::build::{Report, Summary};
+pub use understood::render_understood;
+
+use super::build::{Provenance, Report, Summary};
 use super::comparison::{Split, SplitOutcome};
 use super::layout::{Table, wrapped};
 use super::price::Fact;
@@ -82,23 +85,8 @@ pub fn render_text(report: &Report, options: &TextOptions) -> String {
         page.facts(&report.proof);
     }
 
-    if !report.notes.is_empty() {
-        page.section("Notes");
-        for note in report.notes {
-            page.item(note);
-        }
-    }
-
-    page.section("Made with");
-    let provenance = report.provenance;
-    page.paragraph(
-        &format!("isomargin {}: {}", provenance.version, provenance.command),
-        INDENT,
-    );
-    for input in &provenance.inputs {
-        page.paragraph(&format!("{}, SHA-256", input.path), INDENT);
-        page.paragraph(&input.sha256, INDENT + INDENT);
-    }
+    page.notes(report.notes);
+    page.made_with(report.provenance);
     page.blank();
     page.paragraph(report.caution, 0);
     page.out
@@ -152,6 +140,25 @@ impl<'o> Page<'o> {
         self.out
             .push_str(&wrapped(text, self.options.width, INDENT, INDENT + INDENT));
         self.blank();
+    }
+
+    fn notes(&mut self, notes: &[String]) {
+        if !notes.is_empty() {
+            self.section("Notes");
+        }
+        for note in notes {
+            self.item(note);
+        }
+    }
+
+    fn made_with(&mut self, provenance: &Provenance) {
+        self.section("Made with");
+        let command = format!("isomargin {}: {}", provenance.version, provenance.command);
+        self.item(&command);
+        for input in &provenance.inputs {
+            self.item(&format!("{}, SHA-256", input.path));
+            self.paragraph(&input.sha256, INDENT + INDENT);
+        }
     }
 
     fn table(&mut self, table: &Table) {

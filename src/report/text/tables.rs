@@ -21,7 +21,7 @@ pub(super) fn return_name(aim: Aim) -> &'static str {
 }
 
 /// A column's name, with the millions that it is in.
-fn in_millions(name: &str, format: &ColumnFormat) -> String {
+pub(super) fn in_millions(name: &str, format: &ColumnFormat) -> String {
     if format.is_in_millions() {
         format!("{name}, million")
     } else {
