@@ -129,6 +129,8 @@ impl Solved {
             exact_total: self.problem.total(&self.solution.spends),
             spends: rounded.spends,
             total: rounded.total,
+            odd: rounded.odd,
+            kept: rounded.kept,
         });
         self
     }

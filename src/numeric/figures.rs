@@ -82,12 +82,7 @@ pub fn difference(value: f64, total: f64, digits: usize) -> String {
     if value == 0.0 || !(1e-6..1e15).contains(&value.abs()) {
         return figure(value, 2);
     }
-    let written = fixed(value, shown.max(least));
-    if shown < least {
-        trimmed(&written).to_owned()
-    } else {
-        written
-    }
+    trimmed(&fixed(value, shown.max(least))).to_owned()
 }
 
 /// A share of one in percent, to three digits: `13.2 %`.
@@ -248,7 +243,7 @@ mod tests {
         assert_eq!(difference(214.26, 1842.4, 4), "214");
         assert_eq!(difference(0.31, 1842.4, 4), "0.31");
         assert_eq!(difference(3.0, 1842.4, 4), "3");
-        assert_eq!(difference(1.5, 12.25, 4), "1.50");
+        assert_eq!(difference(1.5, 12.25, 4), "1.5");
         assert_eq!(difference(0.0, 12.25, 4), "0");
     }
 

@@ -166,7 +166,9 @@ impl Summary {
         };
         Self {
             headline,
-            rounding: findings.rounding.map(|rounding| rounding.in_words(units)),
+            rounding: findings
+                .rounding
+                .map(|rounding| rounding.in_words(problem, units)),
             certificate: certificate_line(problem.aim(), findings.certificate, units),
             total,
         }

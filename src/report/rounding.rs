@@ -1,7 +1,11 @@
 //! What it costs to round the spends.
 
-use super::wording::Units;
+use super::wording::{Units, names};
+use crate::model::Problem;
 use crate::numeric::figures;
+
+/// Activities that are named before they are counted.
+const NAMED: usize = 3;
 
 /// Spends rounded to a step, and what that costs.
 #[derive(Debug, Clone, PartialEq)]
@@ -14,6 +18,11 @@ pub struct Rounding {
     pub exact_total: f64,
     /// Total of the rounded plan.
     pub total: f64,
+    /// The activity that takes the rest of a limit that is no whole number of steps, by index.
+    pub odd: Option<usize>,
+    /// Activities, by index, that keep their exact spend, since no whole number of steps lies
+    /// between their floor and their cap.
+    pub kept: Vec<usize>,
 }
 
 impl Rounding {
@@ -23,7 +32,23 @@ impl Rounding {
     }
 
     /// `Rounded to multiples of 1,000 EUR: costs 0.02 homes protected (0.001 %).`
-    pub(super) fn in_words(&self, units: Units) -> String {
+    pub(super) fn in_words(&self, problem: &Problem, units: Units) -> String {
+        let name = |i: usize| problem.activities()[i].name.to_string();
+        let mut words = self.cost_in_words(units);
+        if let Some(odd) = self.odd {
+            words.push_str(&format!(" {} takes the odd amount.", name(odd)));
+        }
+        if !self.kept.is_empty() {
+            let listed: Vec<String> = self.kept.iter().take(NAMED).map(|&i| name(i)).collect();
+            words.push_str(&format!(
+                " Kept exact, since no multiple lies within the bounds: {}.",
+                names(&listed, self.kept.len())
+            ));
+        }
+        words
+    }
+
+    fn cost_in_words(&self, units: Units) -> String {
         let step = units.money(self.step);
         let change = self.cost();
         if change == 0.0 {
