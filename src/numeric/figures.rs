@@ -121,23 +121,35 @@ const IN_MILLIONS_FROM: f64 = 1e10;
 /// Decimals beyond which a column of small numbers is written each in its own way.
 const MOST_DECIMALS: usize = 8;
 
+/// Distance from a whole number that a column would not show.
+const WHOLE: f64 = 1e-9;
+
 impl ColumnFormat {
     /// The format in which the largest of `values` shows `digits` digits.
     pub fn of(values: impl Iterator<Item = f64>, digits: usize) -> Self {
-        let largest = values
-            .map(f64::abs)
-            .filter(|size| size.is_finite())
-            .fold(0.0, f64::max);
+        let values: Vec<f64> = values.filter(|value| value.is_finite()).collect();
+        let largest = values.iter().copied().map(f64::abs).fold(0.0, f64::max);
         let divisor = if largest >= IN_MILLIONS_FROM {
             1e6
         } else {
             1.0
         };
-        let decimals = decimals_for(largest / divisor, digits);
-        let fits = decimals <= MOST_DECIMALS && largest / divisor < 1e12;
+        let most = decimals_for(largest / divisor, digits);
+        if most > MOST_DECIMALS || largest / divisor >= 1e12 {
+            return Self {
+                divisor: 1.0,
+                decimals: None,
+            };
+        }
+        // Decimals that are zero in every row say nothing.
+        let suffice = |&decimals: &usize| {
+            let scale = 10f64.powi(decimals as i32) / divisor;
+            let is_whole = |value: &f64| (value * scale - (value * scale).round()).abs() < WHOLE;
+            values.iter().all(is_whole)
+        };
         Self {
-            divisor: if fits { divisor } else { 1.0 },
-            decimals: fits.then_some(decimals),
+            divisor,
+            decimals: Some((0..most).find(suffice).unwrap_or(most)),
         }
     }
 
@@ -245,6 +257,25 @@ mod tests {
         assert_eq!(difference(3.0, 1842.4, 4), "3");
         assert_eq!(difference(1.5, 12.25, 4), "1.5");
         assert_eq!(difference(0.0, 12.25, 4), "0");
+    }
+
+    #[test]
+    fn a_column_has_the_decimals_that_its_largest_number_needs() {
+        let cells = |values: &[f64]| {
+            let format = ColumnFormat::of(values.iter().copied(), 4);
+            values
+                .iter()
+                .map(|&value| format.cell(value))
+                .collect::<Vec<_>>()
+        };
+        assert_eq!(cells(&[412.16, 0.52, 0.0]), ["412.2", "0.5", "0"]);
+        assert_eq!(cells(&[2.0, 12.0]), ["2", "12"]);
+        assert_eq!(cells(&[1842.4, 0.01]), ["1,842", "~0"]);
+        assert_eq!(cells(&[24e9, 1.2346e8]), ["24,000", "123"]);
+        assert_eq!(
+            ColumnFormat::of([3.0].into_iter(), 4).signed_cell(-1.0),
+            "−1"
+        );
     }
 
     #[test]

@@ -16,22 +16,24 @@ const SOLVED_AGAIN_UP_TO: usize = 10_000;
 /// Share of the limit that the "next" amount is near.
 const STEP_SHARE: f64 = 1.0 / 20_000.0;
 
+/// The same below [`WHOLE_STEPS_FROM`], where the unit itself is large, such as a million.
+const SMALL_LIMIT_STEP_SHARE: f64 = 1.0 / 1000.0;
+
 /// From this limit on, a step is at least one unit: a committee thinks in whole ones.
 const WHOLE_STEPS_FROM: f64 = 100.0;
 
-/// The round amount by which the limit is thought to grow: the power of ten nearest a
-/// twenty-thousandth of it.
+/// The round amount by which the limit is thought to grow, a power of ten: 1,000 for 24,000,000,
+/// 1 for 850, 0.01 for 24.
 pub fn step_of(limit: f64) -> f64 {
     let size = limit.abs();
-    let target = size * STEP_SHARE;
-    if !(target > 0.0 && target.is_finite()) {
+    if !(size > 0.0 && size.is_finite()) {
         return 1.0;
     }
-    let step = 10f64.powi(target.log10().round() as i32);
+    let nearest = |target: f64| 10f64.powi(target.log10().round() as i32);
     if size >= WHOLE_STEPS_FROM {
-        step.max(1.0)
+        nearest(size * STEP_SHARE).max(1.0)
     } else {
-        step
+        nearest(size * SMALL_LIMIT_STEP_SHARE)
     }
 }
 
@@ -152,4 +154,18 @@ fn next_in_words(facts: &HeadlineFacts) -> Option<String> {
     let change = problem.total(&next.spends) - facts.exact_total;
     let change = change_in_words(aim, change, VerbForm::Bare);
     Some(format!("; the next {amount} would {change}"))
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn a_step_is_a_round_amount_near_a_twenty_thousandth_of_the_limit() {
+        assert_eq!(step_of(24e6), 1000.0);
+        assert_eq!(step_of(240e9), 1e7);
+        assert_eq!(step_of(850.0), 1.0);
+        assert_eq!(step_of(24.0), 0.01);
+        assert_eq!(step_of(0.0), 1.0);
+    }
 }
