@@ -9,40 +9,41 @@ use super::build::Report;
 use super::json::verdict_name;
 use crate::certificate::LpCheck;
 
-/// Rows that one thread formats at a time: half a megabyte of text.
-const ROWS_A_BLOCK: usize = 8192;
+/// Rows that one thread formats at a time: a third of a megabyte of text, which a second-level
+/// cache holds.
+const ROWS_A_BLOCK: usize = 4096;
 
-/// Blocks that are held before they are written: enough to keep the threads busy.
-const BLOCKS_A_WAVE: usize = 16;
-
-/// Bytes that a row usually takes.
-const ROW_BYTES: usize = 80;
+/// Blocks that are formatted while as many are written.
+const BLOCKS_A_WAVE: usize = 8;
 
 /// Writes the table of spends: `activity,spend,return,marginal_return,position`.
 ///
-/// Blocks of rows are formatted in parallel and written in their order, so a million rows take
-/// little memory.
+/// Blocks of rows are formatted in parallel and written in their order, the next ones while the
+/// last are on their way, so a million rows take little memory.
 ///
 /// # Errors
 /// What the writer says.
-pub fn render_allocation(rows: &ActivityRows, out: &mut impl Write) -> io::Result<()> {
+pub fn render_allocation(rows: &ActivityRows, out: &mut (impl Write + Send)) -> io::Result<()> {
     out.write_all(b"activity,spend,return,marginal_return,position\n")?;
-    let block = |start: usize| {
-        let end = rows.len().min(start + ROWS_A_BLOCK);
-        let mut text = Vec::with_capacity((end - start) * ROW_BYTES);
-        for i in start..end {
-            push_row(&mut text, &rows.row(i));
-        }
-        text
+    let fill = |wave: &mut [Vec<u8>], first_row: usize| {
+        wave.par_iter_mut().enumerate().for_each(|(block, text)| {
+            let start = first_row + block * ROWS_A_BLOCK;
+            text.clear();
+            for i in start..rows.len().min(start + ROWS_A_BLOCK) {
+                push_row(text, &rows.row(i));
+            }
+        });
     };
-    let starts: Vec<usize> = (0..rows.len()).step_by(ROWS_A_BLOCK).collect();
-    for wave in starts.chunks(BLOCKS_A_WAVE) {
-        let blocks: Vec<Vec<u8>> = wave.par_iter().map(|&start| block(start)).collect();
-        for text in blocks {
-            out.write_all(&text)?;
-        }
+    let mut write = |wave: &[Vec<u8>]| wave.iter().try_for_each(|text| out.write_all(text));
+    let mut ready = vec![Vec::new(); BLOCKS_A_WAVE];
+    let mut next = ready.clone();
+    let wave_rows = ROWS_A_BLOCK * BLOCKS_A_WAVE;
+    for first_row in (0..rows.len()).step_by(wave_rows) {
+        let ((), written) = rayon::join(|| fill(&mut next, first_row), || write(&ready));
+        written?;
+        std::mem::swap(&mut ready, &mut next);
     }
-    Ok(())
+    write(&ready)
 }
 
 fn push_row(text: &mut Vec<u8>, row: &ActivityRow) {
