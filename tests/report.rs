@@ -100,6 +100,7 @@ impl Solved {
                 upper: total * (1.0 + 4e-7),
                 prices: solution.shadow_prices.clone(),
                 rounds: 3,
+                encloses: true,
             }),
         };
         let prices = price_constraints(&problem, &solution).unwrap();

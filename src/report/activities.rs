@@ -2,7 +2,7 @@
 
 use std::fmt;
 
-use crate::curves::ReturnCurve;
+use crate::curves::{Curve, ReturnCurve, Shape};
 use crate::model::{Activity, Aim, Position, Problem, Solution};
 use crate::numeric::figures;
 
@@ -94,13 +94,14 @@ impl<'a> ActivityRows<'a> {
         let reason = match activity.position(spend) {
             _ if activity.floor == activity.cap => Reason::Fixed,
             Position::AtCap => Reason::AtCap(share),
+            Position::AtFloor | Position::Unfunded if price.is_infinite() => Reason::NothingLeft,
             Position::AtFloor => Reason::AtFloor(share),
             Position::Unfunded => Reason::Unfunded(share),
             Position::Between if price == 0.0 => Reason::Saturated,
             Position::Between if spend != self.spends[i] => Reason::Rounded,
             Position::Between => match share {
                 Some(share) if self.is_at_knot(i, spend) => Reason::AtKnot(share),
-                _ if activity.curve.curvature(spend) == 0.0 => Reason::Straight,
+                _ if is_straight(activity) => Reason::Straight,
                 _ => Reason::AtPrice,
             },
         };
@@ -125,6 +126,14 @@ impl<'a> ActivityRows<'a> {
     }
 }
 
+/// Whether a spend between knots or bounds lies on a straight piece.
+fn is_straight(activity: &Activity) -> bool {
+    match activity.curve {
+        Curve::Points(_) => true,
+        _ => activity.curve.shape(activity.floor, activity.cap) == Shape::Straight,
+    }
+}
+
 /// Why a spend is what it is. Shares are marginal return over price.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub enum Reason {
@@ -141,6 +150,8 @@ pub enum Reason {
     AtFloor(Option<f64>),
     /// The first unit earns too little.
     Unfunded(Option<f64>),
+    /// The limit leaves nothing above the floors, at any price.
+    NothingLeft,
     /// Nothing more can be earned.
     Saturated,
     /// The next unit earned the price before the spend was rounded.
@@ -179,6 +190,7 @@ impl Why {
             Reason::AtCap(share) => with("at cap", share),
             Reason::AtFloor(share) => with("at floor", share),
             Reason::Unfunded(share) => with("unfunded", share),
+            Reason::NothingLeft => "nothing left".to_owned(),
             Reason::Saturated => "saturated".to_owned(),
             Reason::Rounded => "rounded".to_owned(),
             Reason::Fixed => "fixed".to_owned(),
@@ -213,6 +225,7 @@ impl fmt::Display for Why {
             Reason::AtCap(share) => with("at its cap: ", "next", share),
             Reason::AtFloor(share) => with("at its floor: ", "next", share),
             Reason::Unfunded(share) => with("unfunded: ", "first", share),
+            Reason::NothingLeft => f.write_str("the limit leaves nothing above the floors"),
             Reason::Saturated => f.write_str("saturated: more would earn nothing"),
             Reason::Rounded => write!(f, "rounded: the next unit {earned} the price before"),
             Reason::Fixed => f.write_str("floor and cap are the same"),

@@ -66,10 +66,14 @@ pub(super) fn headline(facts: &HeadlineFacts) -> String {
 
     let mut said = match (aim, constraint.sense, proven) {
         (Aim::Minimise, Sense::AtLeast, true) => {
+            let least = facts.units.total(facts.total, TOTAL_DIGITS);
             let meet = if count == 1 { "meets" } else { "meet" };
-            format!("{who} {meet} {limit} at the least cost of {total}")
+            format!("{who} {meet} {limit} at the least cost of {least}")
         }
-        (Aim::Minimise, _, true) => format!("{who}, {limit}: the least is {total}"),
+        (Aim::Minimise, _, true) => {
+            let least = facts.units.total(facts.total, TOTAL_DIGITS);
+            format!("{who}, {limit}: the least total is {least}")
+        }
         _ if unspent => {
             let used = figures::figure(facts.price.used, 6);
             format!("{who}, {used} of {limit}: {total}")

@@ -36,14 +36,27 @@ pub(super) fn certificate_line(aim: Aim, certificate: &Certificate, units: Units
 
 fn cross_check_line(lp: &LpCheck, units: Units) -> String {
     match lp {
-        LpCheck::Bracketed(bracket) => format!(
-            "Linear programming, on its own, puts the best between {} and {}.",
-            figures::figure(bracket.lower, BOUND_DIGITS),
-            units.total(bracket.upper, BOUND_DIGITS)
-        ),
+        LpCheck::Bracketed(bracket) => {
+            let lower = figures::figure(bracket.lower, BOUND_DIGITS);
+            let upper = figures::figure(bracket.upper, BOUND_DIGITS);
+            if !bracket.encloses {
+                let upper = units.total(bracket.upper, BOUND_DIGITS);
+                format!(
+                    "Linear programming, on its own, contradicts it: it puts the best between \
+                     {lower} and {upper}."
+                )
+            } else if lower == upper {
+                "Linear programming, on its own, comes to the same.".to_owned()
+            } else {
+                let upper = units.total(bracket.upper, BOUND_DIGITS);
+                format!(
+                    "Linear programming, on its own, puts the best between {lower} and {upper}."
+                )
+            }
+        }
         LpCheck::LeftOut { limit, .. } => format!(
-            "The cross-check by linear programming is left out above {} activities \
-             (--cross-check runs it).",
+            "The cross-check by linear programming is left out above {} activities and \
+             straight pieces (--cross-check runs it).",
             figures::fixed(*limit as f64, 0)
         ),
         LpCheck::Failed { reason } => {
@@ -63,7 +76,10 @@ pub(super) fn certificate_facts(
     let mut facts = vec![
         Fact::new("Lower bound", bound(certificate.lower_bound)),
         Fact::new("Upper bound", bound(certificate.upper_bound)),
-        Fact::new("Gap", format!("{} of the total", residual(certificate.gap))),
+        Fact::new(
+            "Gap",
+            format!("{} of the returns", residual(certificate.gap)),
+        ),
         Fact::new(
             "Limits and bounds",
             format!(

@@ -10,7 +10,7 @@ const NAMED: usize = 3;
 
 /// One sentence for every reason that needs one. Activities that simply earn the price need none.
 pub(super) fn reasons(rows: &ActivityRows, units: Units) -> Vec<String> {
-    let mut groups: [Vec<(f64, usize)>; 6] = Default::default();
+    let mut groups: [Vec<(f64, usize)>; 7] = Default::default();
     let mut aim = Aim::Maximise;
     for i in 0..rows.len() {
         let why = rows.why(i);
@@ -23,11 +23,12 @@ pub(super) fn reasons(rows: &ActivityRows, units: Units) -> Vec<String> {
             Reason::Straight => (3, None),
             Reason::AtKnot(share) => (4, Some(share)),
             Reason::Fixed => (5, None),
+            Reason::NothingLeft => (6, None),
         };
         groups[group].push((share.unwrap_or(f64::NAN), i));
     }
     let unit = units.money_name().unwrap_or("unit");
-    let starts = starts(aim, unit, groups[3].len());
+    let starts = starts(aim, unit, &groups);
     let mut sentences = Vec::new();
     for (group, start) in groups.iter_mut().zip(starts) {
         if group.is_empty() {
@@ -56,25 +57,51 @@ fn distance(share: f64) -> f64 {
     }
 }
 
-fn starts(aim: Aim, unit: &str, straight: usize) -> [String; 6] {
-    let (earn, cap, floor) = match aim {
+/// Distance of a share from one that is rounding alone: the next unit earns the price itself.
+const ROUNDING: f64 = 1e-9;
+
+fn starts(aim: Aim, unit: &str, groups: &[Vec<(f64, usize)>; 7]) -> [String; 7] {
+    let (earn, beyond, below) = match aim {
         Aim::Maximise => ("earn", "more", "less"),
         Aim::Minimise => ("cost", "less", "more"),
     };
-    let tie = if straight > 1 {
+    let than_price = |group: &[(f64, usize)], direction: &str| {
+        let close = |&(share, _): &(f64, usize)| distance(share) < ROUNDING;
+        if group
+            .iter()
+            .any(|member| member.0.is_finite() && close(member))
+        {
+            format!("would {earn} the price or {direction}")
+        } else {
+            format!("would {earn} {direction} than the price")
+        }
+    };
+    let [caps, floors, unfunded, straight, knots, ..] = groups;
+    let tie = if straight.len() > 1 {
         format!("Straight at the price, so that any division among them {earn}s the same")
     } else {
         "Straight at the price, taking what the others leave".to_owned()
     };
     [
-        format!("At the cap, where the next {unit} would {earn} {cap} than the price"),
-        format!("At the floor, where the next {unit} would {earn} {floor} than the price"),
-        format!("Unfunded, since already the first {unit} would {earn} {floor} than the price"),
+        format!(
+            "At the cap, where the next {unit} {}",
+            than_price(caps, beyond)
+        ),
+        format!(
+            "At the floor, where the next {unit} {}",
+            than_price(floors, below)
+        ),
+        format!(
+            "Unfunded, since already the first {unit} {}",
+            than_price(unfunded, below)
+        ),
         tie,
         format!(
-            "At a knot of its table, where the next {unit} would {earn} {floor} than the price"
+            "At a knot of its table, where the next {unit} {}",
+            than_price(knots, below)
         ),
         "Fixed, since floor and cap are the same".to_owned(),
+        "Kept at the floor, since the limit leaves nothing above the floors".to_owned(),
     ]
 }
 

@@ -65,15 +65,16 @@ pub fn activities(count: usize) -> String {
 /// What a change of the total does, for the aim: `adds 0.031`, `costs 9.15 more`.
 pub(super) fn change_in_words(aim: Aim, change: f64, form: VerbForm) -> String {
     let size = figures::figure(change.abs(), PRICE_DIGITS);
-    let (bare, third) = match (aim, change >= 0.0) {
-        (_, _) if change == 0.0 => return form.of("change nothing", "changes nothing").to_owned(),
+    // A zero keeps the sign of the step that it comes from: nothing added, or nothing lost.
+    let (bare, third) = match (aim, change.is_sign_positive()) {
         (Aim::Maximise, true) => ("add", "adds"),
         (Aim::Maximise, false) => ("lose", "loses"),
         (Aim::Minimise, true) => ("cost", "costs"),
         (Aim::Minimise, false) => ("save", "saves"),
     };
     let verb = form.of(bare, third);
-    match (aim, change > 0.0) {
+    let size = if change == 0.0 { "nothing" } else { &size };
+    match (aim, change.is_sign_positive()) {
         (Aim::Minimise, true) => format!("{verb} {size} more"),
         _ => format!("{verb} {size}"),
     }
@@ -140,6 +141,7 @@ mod tests {
         assert_eq!(words(Aim::Maximise, -2.0), "lose 2");
         assert_eq!(words(Aim::Minimise, 9.148), "cost 9.15 more");
         assert_eq!(words(Aim::Minimise, -9.148), "save 9.15");
-        assert_eq!(words(Aim::Maximise, 0.0), "change nothing");
+        assert_eq!(words(Aim::Maximise, 0.0), "add nothing");
+        assert_eq!(words(Aim::Minimise, -0.0), "save nothing");
     }
 }
