@@ -597,3 +597,18 @@ fn what_was_read_can_be_checked_line_by_line() {
     });
     insta::assert_snapshot!("understood", render_understood(&understood, &PIPED));
 }
+
+#[test]
+fn bold_changes_nothing_but_the_weight() {
+    let plan = coast(24e6);
+    let bold = TextOptions {
+        bold: true,
+        ..PIPED
+    };
+    let text = render_text(&plan.report(), &bold);
+    assert!(text.contains("\x1b[1m"));
+    assert_eq!(
+        text.replace("\x1b[1m", "").replace("\x1b[0m", ""),
+        plan.text()
+    );
+}

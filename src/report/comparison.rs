@@ -254,3 +254,80 @@ fn value_split(
         outside_bounds: outside as usize,
     })
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::curves::{Curve, Linear, LinearParams};
+    use crate::model::Activity;
+
+    /// Activities that return what they spend, so that the total is the use: floor, cap, current.
+    fn plan(bounds: &[(f64, f64, Option<f64>)], constraint: Constraint) -> Problem {
+        let activities = bounds
+            .iter()
+            .map(|&(floor, cap, current)| {
+                let curve = Curve::Linear(Linear::new(LinearParams { slope: 1.0 }).unwrap());
+                let mut activity = Activity::new("a", curve);
+                (activity.floor, activity.cap, activity.current) = (floor, cap, current);
+                activity
+            })
+            .collect();
+        Problem::new(Aim::Maximise, activities, vec![constraint]).unwrap()
+    }
+
+    fn used(splits: &[Split], kind: SplitKind) -> Result<f64, NoSplit> {
+        let split = splits.iter().find(|split| split.kind == kind).unwrap();
+        split.outcome.map(|outcome| outcome.used)
+    }
+
+    #[test]
+    fn splits_meet_the_limit_within_floors_and_caps() {
+        let bounds = [
+            (0.0, 2.0, Some(1.0)),
+            (5.0, f64::INFINITY, Some(1.0)),
+            (0.0, f64::INFINITY, Some(4.0)),
+        ];
+        let splits = compare_splits(&plan(&bounds, Constraint::budget(10.0)), 10.0);
+        for kind in [SplitKind::Proportional, SplitKind::Even] {
+            let used = used(&splits, kind).unwrap();
+            assert!((used - 10.0).abs() < 1e-9, "{kind:?} {used}");
+        }
+        assert_eq!(used(&splits, SplitKind::Current), Ok(6.0));
+        let current = splits[0].outcome.unwrap();
+        assert_eq!((current.outside_bounds, current.same_limit), (1, false));
+        assert_eq!(current.gain, 4.0);
+    }
+
+    #[test]
+    fn a_split_that_its_caps_stop_uses_what_it_can_of_a_budget() {
+        let bounds = [(0.0, 2.0, Some(1.0)), (0.0, 9.0, Some(0.0))];
+        let splits = compare_splits(&plan(&bounds, Constraint::budget(10.0)), 10.0);
+        // What has nothing today gets nothing in proportion.
+        assert_eq!(used(&splits, SplitKind::Proportional), Ok(2.0));
+        let splits = compare_splits(&plan(&bounds, Constraint::requirement(10.0)), 10.0);
+        assert_eq!(
+            used(&splits, SplitKind::Proportional),
+            Err(NoSplit::OutOfReach)
+        );
+    }
+
+    #[test]
+    fn what_is_not_known_of_today_is_not_taken_for_zero() {
+        let some = [(0.0, 2.0, Some(1.0)), (0.0, 9.0, None)];
+        let splits = compare_splits(&plan(&some, Constraint::budget(10.0)), 10.0);
+        let incomplete = NoSplit::CurrentIncomplete { missing: 1 };
+        assert_eq!(used(&splits, SplitKind::Current), Err(incomplete));
+        let none = [(0.0, 2.0, None), (0.0, 9.0, None)];
+        let splits = compare_splits(&plan(&none, Constraint::budget(10.0)), 10.0);
+        assert_eq!(
+            used(&splits, SplitKind::Proportional),
+            Err(NoSplit::CurrentUnknown)
+        );
+        let zero = [(0.0, 2.0, Some(0.0)), (0.0, 9.0, Some(0.0))];
+        let splits = compare_splits(&plan(&zero, Constraint::budget(10.0)), 10.0);
+        assert_eq!(
+            used(&splits, SplitKind::Proportional),
+            Err(NoSplit::CurrentZero)
+        );
+    }
+}
