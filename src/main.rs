@@ -1,3 +1,7 @@
 //! Parse, run, exit status.
 
-fn main() {}
+use std::process::ExitCode;
+
+fn main() -> ExitCode {
+    isomargin::cli::run(std::env::args_os())
+}
