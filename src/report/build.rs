@@ -1,7 +1,7 @@
 //! From a solved and certified plan to the report, once.
 
 use super::activities::ActivityRows;
-use super::comparison::{NoSplit, Split, compare_splits};
+use super::comparison::{NoSplit, Planned, Split, compare_splits};
 use super::headline::{HeadlineFacts, headline, step_of};
 use super::price::{ConstraintRow, Fact, price_facts};
 use super::proof::{certificate_facts, certificate_line};
@@ -220,7 +220,13 @@ impl<'a> Report<'a> {
                 .map(|(constraint, price)| ConstraintRow { constraint, price })
                 .collect(),
             price,
-            comparison: compare_splits(problem, summary.total),
+            comparison: compare_splits(
+                problem,
+                Planned {
+                    total: summary.total,
+                    used: findings.prices.first().map_or(0.0, |price| price.used),
+                },
+            ),
             certificate: findings.certificate,
             proof: certificate_facts(
                 findings.certificate,

@@ -1,4 +1,4 @@
-//! The plan beside other splits: today's, today's scaled to the same limit, and an even one.
+//! The plan beside other splits: today's, today's scaled to the same use, and an even one.
 
 use crate::model::{Aim, Constraint, Problem, Sense};
 use crate::numeric::block_sums;
@@ -54,8 +54,8 @@ pub struct SplitOutcome {
     pub gain: f64,
     /// That gain as a share of the split's own total; `None` where that is zero.
     pub gain_share: Option<f64>,
-    /// Whether it uses what the plan may use, to a relative 1e-9.
-    pub same_limit: bool,
+    /// Whether it uses as much as the plan, to a relative 1e-9.
+    pub same_use: bool,
     /// Activities that it leaves outside their floor or cap.
     pub outside_bounds: usize,
 }
@@ -98,15 +98,24 @@ const SAME_USE: f64 = 1e-9;
 /// Relative difference up to which two totals are the same: what two orders of summing leave.
 const SAME_TOTAL: f64 = 1e-13;
 
-/// Today's split, beside a plan that reaches `total` under constraint 0.
-pub fn compare_with_current(problem: &Problem, total: f64) -> Split {
+/// What the other splits stand beside.
+#[derive(Debug, Clone, Copy)]
+pub(super) struct Planned {
+    /// Total of the plan, in the common unit.
+    pub total: f64,
+    /// What the plan uses of constraint 0.
+    pub used: f64,
+}
+
+/// Today's split, beside the plan.
+pub(super) fn compare_with_current(problem: &Problem, plan: Planned) -> Split {
     let missing = currents_missing(problem);
     let outcome = if missing == problem.activities().len() {
         Err(NoSplit::CurrentUnknown)
     } else if missing > 0 {
         Err(NoSplit::CurrentIncomplete { missing })
     } else {
-        value_split(problem, total, |i| current_of(problem, i))
+        value_split(problem, plan, |i| current_of(problem, i))
     };
     Split {
         kind: SplitKind::Current,
@@ -115,8 +124,8 @@ pub fn compare_with_current(problem: &Problem, total: f64) -> Split {
 }
 
 /// All the other splits, in the order of the table.
-pub fn compare_splits(problem: &Problem, total: f64) -> Vec<Split> {
-    let current = compare_with_current(problem, total);
+pub(super) fn compare_splits(problem: &Problem, plan: Planned) -> Vec<Split> {
+    let current = compare_with_current(problem, plan);
     let proportional = match current.outcome {
         Err(unknown @ (NoSplit::CurrentUnknown | NoSplit::CurrentIncomplete { .. })) => {
             Err(unknown)
@@ -128,7 +137,7 @@ pub fn compare_splits(problem: &Problem, total: f64) -> Vec<Split> {
         {
             Err(NoSplit::CurrentZero)
         }
-        _ => scale_split(problem, total, |i| current_of(problem, i)),
+        _ => scale_split(problem, plan, |i| current_of(problem, i)),
     };
     vec![
         current,
@@ -138,7 +147,7 @@ pub fn compare_splits(problem: &Problem, total: f64) -> Vec<Split> {
         },
         Split {
             kind: SplitKind::Even,
-            outcome: scale_split(problem, total, |_| 1.0),
+            outcome: scale_split(problem, plan, |_| 1.0),
         },
     ]
 }
@@ -154,10 +163,10 @@ fn current_of(problem: &Problem, i: usize) -> f64 {
     problem.activities()[i].current.unwrap_or(0.0)
 }
 
-/// Finds the factor s with Σ a_i·clamp(s·part_i, floor_i, cap_i) = limit and values the split.
+/// Finds the factor s with Σ a_i·clamp(s·part_i, floor_i, cap_i) = what the plan uses, and values the split.
 fn scale_split(
     problem: &Problem,
-    total: f64,
+    plan: Planned,
     part: impl Fn(usize) -> f64 + Sync,
 ) -> Result<SplitOutcome, NoSplit> {
     let Some(constraint) = problem.constraints().first() else {
@@ -172,26 +181,26 @@ fn scale_split(
         wanted.max(activity.floor).min(activity.cap)
     };
     let used = |scale: f64| used_by(problem, constraint, |i| spend(scale, i));
-    let (limit, reach) = (constraint.limit, used(f64::INFINITY));
-    let scale = if reach <= limit {
-        let meets = constraint.sense == Sense::AtMost || is_same_use(reach, limit);
+    let reach = used(f64::INFINITY);
+    let scale = if reach <= plan.used {
+        let meets = constraint.sense == Sense::AtMost || is_same_use(reach, plan.used);
         meets.then_some(f64::INFINITY)
     } else {
-        factor_that_meets(limit, used)
+        factor_that_meets(plan.used, used)
     };
     let scale = scale.ok_or(NoSplit::OutOfReach)?;
-    value_split(problem, total, |i| spend(scale, i))
+    value_split(problem, plan, |i| spend(scale, i))
 }
 
-fn is_same_use(used: f64, limit: f64) -> bool {
-    (used - limit).abs() <= SAME_USE * limit.abs()
+fn is_same_use(used: f64, other: f64) -> bool {
+    (used - other).abs() <= SAME_USE * other.abs()
 }
 
-/// The factor s ≥ 0 at which the rising `used(s)` meets `limit`, by bisection to the last bit;
-/// `None` where already `used(0)` is above. `used` must pass `limit` somewhere.
-fn factor_that_meets(limit: f64, used: impl Fn(f64) -> f64) -> Option<f64> {
+/// The factor s ≥ 0 at which the rising `used(s)` meets `target`, by bisection to the last bit;
+/// `None` where already `used(0)` is above. `used` must pass `target` somewhere.
+fn factor_that_meets(target: f64, used: impl Fn(f64) -> f64) -> Option<f64> {
     let (mut below, mut above) = (0.0, 1.0);
-    while used(above) < limit {
+    while used(above) < target {
         (below, above) = (above, above * 2.0);
     }
     loop {
@@ -199,9 +208,9 @@ fn factor_that_meets(limit: f64, used: impl Fn(f64) -> f64) -> Option<f64> {
         if middle <= below || above <= middle {
             return [below, above]
                 .into_iter()
-                .find(|&scale| is_same_use(used(scale), limit));
+                .find(|&scale| is_same_use(used(scale), target));
         }
-        if used(middle) < limit {
+        if used(middle) < target {
             below = middle;
         } else {
             above = middle;
@@ -221,7 +230,7 @@ fn used_by(problem: &Problem, constraint: &Constraint, spend: impl Fn(usize) -> 
 
 fn value_split(
     problem: &Problem,
-    best: f64,
+    plan: Planned,
     spend: impl Fn(usize) -> f64 + Sync,
 ) -> Result<SplitOutcome, NoSplit> {
     let activities = problem.activities();
@@ -241,16 +250,16 @@ fn value_split(
     let constraint = problem.constraints().first();
     let used = constraint.map_or(0.0, |constraint| used_by(problem, constraint, &spend));
     let gain = match problem.aim() {
-        _ if (best - total).abs() <= SAME_TOTAL * best.abs().max(total.abs()) => 0.0,
-        Aim::Maximise => best - total,
-        Aim::Minimise => total - best,
+        _ if (plan.total - total).abs() <= SAME_TOTAL * plan.total.abs().max(total.abs()) => 0.0,
+        Aim::Maximise => plan.total - total,
+        Aim::Minimise => total - plan.total,
     };
     Ok(SplitOutcome {
         used,
         total,
         gain,
         gain_share: (total != 0.0).then(|| gain / total.abs()),
-        same_limit: constraint.is_some_and(|constraint| is_same_use(used, constraint.limit)),
+        same_use: is_same_use(used, plan.used),
         outside_bounds: outside as usize,
     })
 }
@@ -275,6 +284,11 @@ mod tests {
         Problem::new(Aim::Maximise, activities, vec![constraint]).unwrap()
     }
 
+    const BESIDE: Planned = Planned {
+        total: 10.0,
+        used: 10.0,
+    };
+
     fn used(splits: &[Split], kind: SplitKind) -> Result<f64, NoSplit> {
         let split = splits.iter().find(|split| split.kind == kind).unwrap();
         split.outcome.map(|outcome| outcome.used)
@@ -287,24 +301,24 @@ mod tests {
             (5.0, f64::INFINITY, Some(1.0)),
             (0.0, f64::INFINITY, Some(4.0)),
         ];
-        let splits = compare_splits(&plan(&bounds, Constraint::budget(10.0)), 10.0);
+        let splits = compare_splits(&plan(&bounds, Constraint::budget(10.0)), BESIDE);
         for kind in [SplitKind::Proportional, SplitKind::Even] {
             let used = used(&splits, kind).unwrap();
             assert!((used - 10.0).abs() < 1e-9, "{kind:?} {used}");
         }
         assert_eq!(used(&splits, SplitKind::Current), Ok(6.0));
         let current = splits[0].outcome.unwrap();
-        assert_eq!((current.outside_bounds, current.same_limit), (1, false));
+        assert_eq!((current.outside_bounds, current.same_use), (1, false));
         assert_eq!(current.gain, 4.0);
     }
 
     #[test]
     fn a_split_that_its_caps_stop_uses_what_it_can_of_a_budget() {
         let bounds = [(0.0, 2.0, Some(1.0)), (0.0, 9.0, Some(0.0))];
-        let splits = compare_splits(&plan(&bounds, Constraint::budget(10.0)), 10.0);
+        let splits = compare_splits(&plan(&bounds, Constraint::budget(10.0)), BESIDE);
         // What has nothing today gets nothing in proportion.
         assert_eq!(used(&splits, SplitKind::Proportional), Ok(2.0));
-        let splits = compare_splits(&plan(&bounds, Constraint::requirement(10.0)), 10.0);
+        let splits = compare_splits(&plan(&bounds, Constraint::requirement(10.0)), BESIDE);
         assert_eq!(
             used(&splits, SplitKind::Proportional),
             Err(NoSplit::OutOfReach)
@@ -314,17 +328,17 @@ mod tests {
     #[test]
     fn what_is_not_known_of_today_is_not_taken_for_zero() {
         let some = [(0.0, 2.0, Some(1.0)), (0.0, 9.0, None)];
-        let splits = compare_splits(&plan(&some, Constraint::budget(10.0)), 10.0);
+        let splits = compare_splits(&plan(&some, Constraint::budget(10.0)), BESIDE);
         let incomplete = NoSplit::CurrentIncomplete { missing: 1 };
         assert_eq!(used(&splits, SplitKind::Current), Err(incomplete));
         let none = [(0.0, 2.0, None), (0.0, 9.0, None)];
-        let splits = compare_splits(&plan(&none, Constraint::budget(10.0)), 10.0);
+        let splits = compare_splits(&plan(&none, Constraint::budget(10.0)), BESIDE);
         assert_eq!(
             used(&splits, SplitKind::Proportional),
             Err(NoSplit::CurrentUnknown)
         );
         let zero = [(0.0, 2.0, Some(0.0)), (0.0, 9.0, Some(0.0))];
-        let splits = compare_splits(&plan(&zero, Constraint::budget(10.0)), 10.0);
+        let splits = compare_splits(&plan(&zero, Constraint::budget(10.0)), BESIDE);
         assert_eq!(
             used(&splits, SplitKind::Proportional),
             Err(NoSplit::CurrentZero)

@@ -1,6 +1,6 @@
 //! The finding in one sentence.
 
-use super::comparison::{SplitOutcome, compare_with_current};
+use super::comparison::{Planned, SplitOutcome, compare_with_current};
 use super::wording::{TOTAL_DIGITS, Units, VerbForm, activities, change_in_words, limit_noun};
 use crate::certificate::Verdict;
 use crate::model::{Aim, Problem, Sense};
@@ -86,7 +86,11 @@ pub(super) fn headline(facts: &HeadlineFacts) -> String {
             "Not proven. {said}, but the certificate does not hold: a better plan may exist."
         );
     }
-    if let Ok(current) = compare_with_current(facts.problem, facts.total).outcome {
+    let planned = Planned {
+        total: facts.total,
+        used: facts.price.used,
+    };
+    if let Ok(current) = compare_with_current(facts.problem, planned).outcome {
         said.push_str(&against_today(facts, &current));
     }
     if unspent && facts.price.shadow_price == 0.0 {
@@ -122,7 +126,7 @@ fn total_in_words(units: Units, total: f64) -> String {
 }
 
 fn against_today(facts: &HeadlineFacts, current: &SplitOutcome) -> String {
-    let today = if current.same_limit {
+    let today = if current.same_use {
         "today's split".to_owned()
     } else {
         format!("today's {}", facts.units.money(current.used))

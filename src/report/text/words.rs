@@ -4,7 +4,7 @@ use super::tables::return_name;
 use crate::model::Aim;
 use crate::report::build::Report;
 use crate::report::comparison::{NoSplit, Split, SplitKind};
-use crate::report::wording::{activities, limit_noun};
+use crate::report::wording::activities;
 
 /// Units of the table of activities, and how to read it.
 pub(super) fn caption(report: &Report) -> String {
@@ -54,17 +54,10 @@ pub(super) fn remark(report: &Report, split: &Split) -> Option<String> {
             let count = activities(outcome.outside_bounds);
             format!("{name} leaves {count} outside the bounds of this plan")
         }
-        Ok(outcome) if !outcome.same_limit => {
-            let first = report.constraints.first()?;
-            let than = if outcome.used < first.constraint.limit {
-                "less"
-            } else {
-                "more"
-            };
-            format!(
-                "{name} uses {than} than the {}",
-                limit_noun(first.constraint.sense)
-            )
+        Ok(outcome) if !outcome.same_use => {
+            let used = report.constraints.first()?.price.used;
+            let than = if outcome.used < used { "less" } else { "more" };
+            format!("{name} uses {than} than the plan")
         }
         Ok(_) => return None,
         Err(NoSplit::CurrentUnknown) if split.kind == SplitKind::Proportional => {
@@ -77,7 +70,7 @@ pub(super) fn remark(report: &Report, split: &Split) -> Option<String> {
         ),
         Err(NoSplit::CurrentZero) => format!("{name} cannot be made: nothing is spent today"),
         Err(NoSplit::OutOfReach) => {
-            format!("{name} cannot meet the same limit within floors and caps")
+            format!("{name} cannot use as much as the plan within floors and caps")
         }
         Err(NoSplit::NoFiniteTotal) => {
             format!("{name} has no finite {}", return_name(report.aim))
