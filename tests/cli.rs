@@ -254,6 +254,9 @@ fn out_writes_the_whole_pack_and_nothing_else() {
             "{name} of {names:?}"
         );
     }
+    let pictures = |ending: &str| names.iter().filter(|name| name.ends_with(ending)).count();
+    assert_eq!((pictures(".png"), pictures(".svg")), (2, 2), "{names:?}");
+    assert_eq!(names.len(), 11, "{names:?}");
     // Once more into the same folder.
     assert_eq!(plan.run(&arguments).status, Some(0));
     assert_eq!(plan.names("pack"), names);

@@ -9,6 +9,7 @@ use super::status::{Failure, Status};
 use super::terminal::Terminal;
 use super::{Noticed, provenance_of, read};
 use crate::certificate::{CrossCheck, Verdict, certify};
+use crate::charts::PlanView;
 use crate::input::Plan;
 use crate::model::{Problem, Solution};
 use crate::report::{
@@ -81,7 +82,16 @@ pub(super) fn allocate(
         terminal.narrate(&format!("spends written to {}", path.display()));
     }
     if let (Some(folder), Some(report)) = (&arguments.out, &report) {
-        write_pack(folder, report, &inputs, terminal)?;
+        let shown = rounding.as_ref().map(|rounded| Solution {
+            spends: rounded.spends.clone(),
+            shadow_prices: solution.shadow_prices.clone(),
+        });
+        let view = PlanView {
+            labels: &plan.labels,
+            problem,
+            solution: shown.as_ref().unwrap_or(&solution),
+        };
+        write_pack(folder, report, &view, &inputs, terminal)?;
     }
     let options = terminal.text_options(arguments.proof);
     terminal.print(|out| {

@@ -12,7 +12,7 @@ use crate::numeric::figures;
 const EXAMPLE: &str = "Example:
   isomargin allocate activities.csv --budget 24000000
       splits 24,000,000 across the activities of the table, proves the split
-      and prints a report; add --out DIR for tables";
+      and prints a report; add --out DIR for tables and pictures";
 
 /// What stands after them.
 const EXIT_STATUS: &str = "Exit status:
@@ -111,7 +111,7 @@ pub(super) struct AllocateArguments {
     #[arg(long)]
     pub json: bool,
 
-    /// Write the report, result.json and tables as CSV to a folder
+    /// Write the report, result.json, tables as CSV and pictures as PNG and SVG to a folder
     #[arg(long, value_name = "DIR")]
     pub out: Option<PathBuf>,
 

@@ -116,7 +116,7 @@ pub struct ColumnFormat {
 }
 
 /// Beyond this, a column is written in millions.
-const IN_MILLIONS_FROM: f64 = 1e10;
+const IN_MILLIONS_FROM: f64 = 1e9;
 
 /// Decimals beyond which a column of small numbers is written each in its own way.
 const MOST_DECIMALS: usize = 8;

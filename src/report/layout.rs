@@ -3,7 +3,7 @@
 use unicode_width::UnicodeWidthStr;
 
 /// Least width of a table's first column before the table becomes wider than asked.
-const LEAST_NAME_WIDTH: usize = 12;
+const LEAST_NAME_WIDTH: usize = 10;
 
 /// Space between two columns.
 const GAP: usize = 2;

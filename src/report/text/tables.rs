@@ -118,14 +118,18 @@ pub(super) fn comparison_table(report: &Report, outcomes: &[SplitOutcome]) -> Ta
             .chain([report.summary.total]),
         TABLE_DIGITS,
     );
+    let gains = if totals.is_in_millions() {
+        totals
+    } else {
+        ColumnFormat::of(outcomes.iter().map(|outcome| outcome.gain), TABLE_DIGITS)
+    };
     let mut table = Table::new(&[
         ("split", Side::Left),
         (&in_millions("uses", &spends), Side::Right),
         (&in_millions(return_name(report.aim), &totals), Side::Right),
-        (gain_name, Side::Right),
+        (&in_millions(gain_name, &totals), Side::Right),
         ("", Side::Right),
     ]);
-    let gains = ColumnFormat::of(outcomes.iter().map(|outcome| outcome.gain), TABLE_DIGITS);
     let shares = outcomes.iter().filter_map(|outcome| outcome.gain_share);
     let shares = ColumnFormat::of(shares.map(figures::in_percent), SHARE_DIGITS);
     for split in &report.comparison {
