@@ -85,8 +85,12 @@ pub fn difference(value: f64, total: f64, digits: usize) -> String {
     trimmed(&fixed(value, shown.max(least))).to_owned()
 }
 
-/// A share of one in percent, to three digits: `13.2 %`.
+/// A share of one in percent, to three digits: `13.2 %`; `below 0.001 %` for less.
 pub fn percent(share: f64) -> String {
+    const LEAST: f64 = 1e-5;
+    if share != 0.0 && share.abs() < LEAST {
+        return format!("below {} %", figure(in_percent(LEAST), 3));
+    }
     format!("{} %", figure(in_percent(share), 3))
 }
 
@@ -285,6 +289,7 @@ mod tests {
         assert_eq!(times(45.2), "45×");
         assert_eq!(times(0.0123), "0.012×");
         assert_eq!(percent(0.1316), "13.2 %");
+        assert_eq!(percent(8e-9), "below 0.001 %");
         assert_eq!(decimals_for(412.1, 4), 1);
         assert_eq!(decimals_for(24e6, 4), 0);
         assert_eq!(decimals_for(0.0311, 4), 5);

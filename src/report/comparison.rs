@@ -19,7 +19,7 @@ impl SplitKind {
     pub fn name(self) -> &'static str {
         match self {
             SplitKind::Current => "today's split",
-            SplitKind::Proportional => "today's, scaled",
+            SplitKind::Proportional => "today's split, scaled",
             SplitKind::Even => "an even split",
         }
     }

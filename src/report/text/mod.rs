@@ -56,7 +56,7 @@ pub fn render_text(report: &Report, options: &TextOptions) -> String {
     page.table(&activities_table(report));
     if let Some(extrapolation) = &report.extrapolation {
         page.blank();
-        page.paragraph(extrapolation, INDENT);
+        page.item(extrapolation);
     }
     if !report.reasons.is_empty() {
         page.section("Why");

@@ -101,8 +101,8 @@ pub(super) fn activities_table(report: &Report) -> Table {
 /// The splits that could be made, and the plan.
 pub(super) fn comparison_table(report: &Report, outcomes: &[SplitOutcome]) -> Table {
     let gain_name = match report.aim {
-        Aim::Maximise => "the plan adds",
-        Aim::Minimise => "the plan saves",
+        Aim::Maximise => "plan adds",
+        Aim::Minimise => "plan saves",
     };
     let spends = ColumnFormat::of(
         outcomes
