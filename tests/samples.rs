@@ -212,3 +212,35 @@ fn plants_between_their_bounds_pay_the_same_for_their_last_tonne() {
     assert_eq!(position(&result, "Fish cannery"), "at floor");
     assert_eq!(position(&result, "Tannery"), "unfunded");
 }
+
+/// The lines of the blocks of a page that show output.
+fn shown_lines(page: &str) -> Vec<String> {
+    let path = Path::new(env!("CARGO_MANIFEST_DIR")).join(page);
+    let text = std::fs::read_to_string(path).unwrap();
+    let mut lines = Vec::new();
+    let mut inside = false;
+    for line in text.lines() {
+        match line {
+            "```text" => inside = true,
+            "```" => inside = false,
+            _ if inside => lines.push(line.to_owned()),
+            _ => {}
+        }
+    }
+    assert!(!lines.is_empty(), "{page} shows no output");
+    lines
+}
+
+#[test]
+fn the_readme_shows_exactly_what_the_tool_prints() {
+    let printed = allocate("coastal-flood", &[]);
+    assert_eq!(shown_lines("README.md").join("\n"), printed.trim_end());
+}
+
+#[test]
+fn the_guide_to_the_report_quotes_the_tool() {
+    let printed = allocate("coastal-flood", &["--proof"]);
+    for line in shown_lines("docs/reading-a-report.md") {
+        assert!(printed.contains(&line), "not printed: {line}");
+    }
+}
