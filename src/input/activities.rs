@@ -494,12 +494,11 @@ impl Part {
         if cell.is_empty() {
             return None;
         }
-        if !row.table.dialect.decimal_comma {
-            if let Ok(value) = fast_float2::parse::<f64, _>(cell) {
-                if value.is_finite() {
-                    return Some(value);
-                }
-            }
+        if !row.table.dialect.decimal_comma
+            && let Ok(value) = fast_float2::parse::<f64, _>(cell)
+            && value.is_finite()
+        {
+            return Some(value);
         }
         self.unusual_number_in(row, column)
     }
