@@ -1,6 +1,6 @@
 //! The pictures of a plan, one a file, each drawn once and rendered as PNG and as SVG.
 //!
-//! A picture is drawn in its own units of a pixel on a [`canvas::Canvas`]; the renderings differ in how
+//! A picture is drawn in its own units of a pixel on a `canvas::Canvas`; the renderings differ in how
 //! fine that pixel is. Colour never carries a meaning alone: marks differ in shape, lines in
 //! their dashes, and everything is labelled where it stands.
 

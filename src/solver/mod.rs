@@ -1,9 +1,9 @@
 //! From a problem to a solution, by bisection on the shadow price.
 //!
 //! At a price λ of what is limited, every activity asks for the spend whose last unit earns λ
-//! ([`demand`]). What they ask for together falls as λ rises, so the price at which it meets
-//! the limit can be enclosed and bisected ([`price`]). At a jump the activities at the margin share
-//! what is left ([`share`]).
+//! (`demand`). What they ask for together falls as λ rises, so the price at which it meets
+//! the limit can be enclosed and bisected (`price`). At a jump the activities at the margin share
+//! what is left (`share`).
 //!
 //! Everything here maximises: costs enter with their sign turned, see
 //! [`Problem::worth`](crate::model::Problem::worth).
