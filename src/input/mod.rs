@@ -18,6 +18,7 @@ pub mod place;
 mod plan;
 mod plan_file;
 mod points;
+mod rows;
 mod scale;
 mod table;
 
