@@ -6,7 +6,7 @@
 
 use rayon::prelude::*;
 
-use crate::curves::ReturnCurve;
+use crate::curves::{Curve, ReturnCurve};
 use crate::model::{Problem, Sense, Solution};
 use crate::numeric::BLOCK;
 use crate::solver::{Demand, SolveError, demand_of};
@@ -87,9 +87,9 @@ struct Margin {
     moves: bool,
     /// An activity stands on a straight piece, so the price stays until the piece ends.
     straight: bool,
-    /// The best next unit of any activity below its cap; −∞ if none.
+    /// The best next unit of those at a bound or a knot, below their cap; −∞ if none.
     best_next: f64,
-    /// The poorest last unit of any activity above its floor; +∞ if none.
+    /// The poorest last unit of those at a bound or a knot, above their floor; +∞ if none.
     poorest_last: f64,
     /// The greatest price below, at which an activity enters, meets its cap or leaves a knot,
     /// and whether that price is only approached as a spend grows without end.
@@ -147,15 +147,12 @@ impl Margin {
             return margin;
         }
         let worth = problem.worth(i);
-        let next = worth.marginal(spend) / per_unit;
-        let last = worth.marginal_before(spend) / per_unit;
-        if spend < cap {
-            margin.best_next = next;
-        }
-        if floor < spend {
-            margin.poorest_last = last;
-        }
-        if floor < spend && spend < cap && next == last {
+        let between = floor < spend && spend < cap;
+        let at_knot = match &worth {
+            Curve::Points(curve) => curve.marginal(spend) != curve.marginal_before(spend),
+            _ => false,
+        };
+        if between && !at_knot {
             margin.moves = true;
             margin.straight = worth.curvature(spend) == 0.0;
             margin.event_below = if cap.is_finite() {
@@ -164,13 +161,15 @@ impl Margin {
                 (worth.marginal_at_infinity() / per_unit, true)
             };
             margin.event_above = worth.marginal(floor) / per_unit;
-        } else {
-            if spend < cap {
-                margin.event_below = (next, false);
-            }
-            if floor < spend {
-                margin.event_above = last;
-            }
+            return margin;
+        }
+        if spend < cap {
+            margin.best_next = worth.marginal(spend) / per_unit;
+            margin.event_below = (margin.best_next, false);
+        }
+        if floor < spend {
+            margin.poorest_last = worth.marginal_before(spend) / per_unit;
+            margin.event_above = margin.poorest_last;
         }
         margin
     }

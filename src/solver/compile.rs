@@ -194,6 +194,9 @@ pub(super) fn compile(problem: &Problem) -> Demand {
         })
         .collect();
     let mut whole = Demand::default();
+    for (group, lines) in whole.lines.iter_mut().enumerate() {
+        lines.reserve(blocks.iter().map(|block| block.lines[group].len()).sum());
+    }
     for mut block in blocks {
         whole.fixed.join(block.fixed);
         for (lines, more) in whole.lines.iter_mut().zip(&mut block.lines) {

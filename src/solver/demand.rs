@@ -73,7 +73,7 @@ impl Line {
 
     /// The same without the bounds.
     #[inline]
-    fn unbounded(&self, scaled_price: f64) -> f64 {
+    pub(super) fn unbounded(&self, scaled_price: f64) -> f64 {
         self.intercept + self.slope * scaled_price
     }
 }
@@ -151,7 +151,7 @@ impl NumericDemand {
             .clipped(self.floor, self.cap)
     }
 
-    fn at(&self, price: f64) -> UseRange {
+    pub(super) fn at(&self, price: f64) -> UseRange {
         let spends = self.spends_at(price);
         UseRange {
             least: self.use_per_unit * spends.least,
@@ -238,65 +238,5 @@ impl Demand {
             pieces: every(&self.pieces, stride),
             numeric: every(&self.numeric, stride),
         }
-    }
-
-    /// The same demand for prices in [`from`, `to`] alone: what stays at a bound over the whole
-    /// interval becomes a constant, and the lines that stay between their bounds become one.
-    pub(super) fn narrowed(&self, from: f64, to: f64) -> Self {
-        let mut narrow = Self {
-            fixed: self.fixed,
-            ..Self::default()
-        };
-        for (group, scale) in PriceScale::ALL.into_iter().enumerate() {
-            let (at_from, at_to) = (scale.of(from), scale.of(to));
-            let mut intercept = CompensatedSum::default();
-            let mut slope = CompensatedSum::default();
-            for line in &self.lines[group] {
-                let (most, least) = (line.at(at_from), line.at(at_to));
-                let inside =
-                    line.least <= line.unbounded(at_to) && line.unbounded(at_from) <= line.greatest;
-                if most == least {
-                    narrow.fixed.add(most);
-                } else if inside {
-                    intercept.add(line.intercept);
-                    slope.add(line.slope);
-                } else {
-                    narrow.lines[group].push(*line);
-                }
-            }
-            if slope.total() != 0.0 {
-                narrow.lines[group].push(Line {
-                    intercept: intercept.total(),
-                    slope: slope.total(),
-                    least: f64::NEG_INFINITY,
-                    greatest: f64::INFINITY,
-                });
-            }
-        }
-        let (logs_from, logs_to) = (LogPrices::of(from), LogPrices::of(to));
-        for power in &self.powers {
-            let (most, least) = (power.at(logs_from), power.at(logs_to));
-            if most == least {
-                narrow.fixed.add(most);
-            } else {
-                narrow.powers.push(*power);
-            }
-        }
-        for piece in &self.pieces {
-            if piece.price > to {
-                narrow.fixed.add(piece.width);
-            } else if piece.price >= from {
-                narrow.pieces.push(*piece);
-            }
-        }
-        for numeric in &self.numeric {
-            let (most, least) = (numeric.at(from).greatest, numeric.at(to).least);
-            if most == least {
-                narrow.fixed.add(most);
-            } else {
-                narrow.numeric.push(numeric.clone());
-            }
-        }
-        narrow
     }
 }

@@ -11,6 +11,7 @@
 mod compile;
 mod demand;
 mod error;
+mod narrow;
 mod price;
 mod rounding;
 mod share;
@@ -20,7 +21,7 @@ pub use error::SolveError;
 pub use rounding::{RoundError, Rounded, round_spends};
 
 use crate::curves::ReturnCurve;
-use crate::model::{Problem, Sense, Solution};
+use crate::model::{Problem, Sense, Solution, UsePerUnit};
 use crate::numeric::block_sums;
 use price::PriceBracket;
 
@@ -76,8 +77,9 @@ pub fn demand_of(problem: &Problem) -> Result<Demand, SolveError> {
             found: problem.constraints().len(),
         });
     };
-    let count = problem.activities().len();
-    if let Some(activity) = (0..count).find(|&i| constraint.use_per_unit(i) <= 0.0) {
+    if let UsePerUnit::PerActivity(uses) = &constraint.use_per_unit
+        && let Some(activity) = uses.iter().position(|use_per_unit| *use_per_unit <= 0.0)
+    {
         return Err(SolveError::UseNotPositive { activity });
     }
     Ok(compile::compile(problem))

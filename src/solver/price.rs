@@ -7,6 +7,7 @@
 //! neighbouring prices, whatever the scale of the plan.
 
 use super::demand::{Demand, UseRange};
+use super::narrow::narrowed;
 use crate::model::Sense;
 
 /// Terms from which on a sampled guess and narrowing pay; below, a pass costs less than either.
@@ -90,16 +91,18 @@ fn enclose_between(demand: &Demand, limit: f64, low: i64, high: i64) -> PriceBra
         return found;
     }
     // Narrow, bisect a while, narrow again: each time fewer activities are undecided.
-    let mut narrow = Demand::clone(demand);
+    let mut narrow: Option<Demand> = None;
     loop {
         let width = search.high.abs_diff(search.low);
-        narrow = narrow.narrowed(price_at(search.low), price_at(search.high));
+        let widest = narrow.as_ref().unwrap_or(demand);
+        let narrower = narrowed(widest, price_at(search.low), price_at(search.high));
         let mut inner = Search {
-            demand: &narrow,
+            demand: &narrower,
             ..search
         };
         let found = inner.run(width >> NARROWING_BITS);
         search = Search { demand, ..inner };
+        narrow = Some(narrower);
         match found {
             Some(found) => return found,
             None if search.high.abs_diff(search.low) <= 1 => return search.bracket(),

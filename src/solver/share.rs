@@ -5,7 +5,7 @@ use rayon::prelude::*;
 use super::SolveError;
 use super::compile::Answer;
 use super::price::PriceBracket;
-use crate::curves::{ReturnCurve, SpendRange};
+use crate::curves::{Curve, ReturnCurve, SpendRange};
 use crate::model::{Position, Problem, Sense};
 use crate::numeric::{BLOCK, block_sums};
 
@@ -102,9 +102,12 @@ fn meet_the_limit(problem: &Problem, sense: Sense, limit: f64, spends: &mut [f64
     let constraint = &problem.constraints()[0];
     // A spend at a knot stays there: the price on both sides depends on it.
     let movable = |i: usize| {
-        let worth = problem.worth(i);
-        problem.activities()[i].position(spends[i]) == Position::Between
-            && worth.marginal(spends[i]) == worth.marginal_before(spends[i])
+        let activity = &problem.activities()[i];
+        let at_knot = match &activity.curve {
+            Curve::Points(curve) => curve.marginal(spends[i]) != curve.marginal_before(spends[i]),
+            _ => false,
+        };
+        !at_knot && activity.position(spends[i]) == Position::Between
     };
     let used_by = |i: usize| constraint.use_per_unit(i) * spends[i];
     let free = (0..spends.len())
