@@ -21,7 +21,7 @@ pub use error::SolveError;
 pub use rounding::{RoundError, Rounded, round_spends};
 
 use crate::curves::ReturnCurve;
-use crate::model::{Problem, Sense, Solution, UsePerUnit};
+use crate::model::{Activity, Problem, Sense, Solution, UsePerUnit};
 use crate::numeric::block_sums;
 use price::PriceBracket;
 
@@ -46,16 +46,23 @@ pub fn solve(problem: &Problem) -> Result<Solution, SolveError> {
         });
     }
 
-    let bracket = if limit == least_use && sense != Sense::AtLeast {
-        PriceBracket::exactly(first_unit_price(problem))
+    // At the ends of what the bounds allow there is one plan, and the price is its bound.
+    let all_at = |bound: fn(&Activity) -> f64| problem.activities().iter().map(bound).collect();
+    let (price, spends) = if limit == least_use && sense != Sense::AtLeast {
+        (first_unit_price(problem), all_at(|activity| activity.floor))
     } else if limit == greatest_use && sense != Sense::AtMost {
-        PriceBracket::exactly(last_unit_price(problem))
-    } else if price_is_zero(&demand, sense, limit) {
-        PriceBracket::exactly(0.0)
+        (last_unit_price(problem), all_at(|activity| activity.cap))
     } else {
-        price::enclose(&demand, sense, limit)
+        let bracket = if price_is_zero(&demand, sense, limit) {
+            PriceBracket::exactly(0.0)
+        } else {
+            price::enclose(&demand, sense, limit)
+        };
+        (
+            bracket.price(),
+            share::spends_within(problem, bracket, sense, limit)?,
+        )
     };
-    let spends = share::spends_within(problem, bracket, sense, limit)?;
     // Only at zero spend can a curve be without a finite return.
     let infinite = |&i: &usize| spends[i] == 0.0 && problem.worth(i).value(0.0).is_infinite();
     if let Some(activity) = (0..spends.len()).find(infinite) {
@@ -63,7 +70,7 @@ pub fn solve(problem: &Problem) -> Result<Solution, SolveError> {
     }
     Ok(Solution {
         spends,
-        shadow_prices: vec![problem.aim().sign() * bracket.price()],
+        shadow_prices: vec![problem.aim().sign() * price],
     })
 }
 
