@@ -8,10 +8,12 @@
 use rayon::prelude::*;
 
 use super::CrossCheck;
-use super::polyline::{Breakpoints, Polyline};
-use super::programme::Programme;
-use crate::curves::Curve;
-use crate::model::{Aim, Problem, Sense, Solution};
+use super::dual::price_of_unit;
+use super::polyline::{Breakpoints, Polyline, SpendBounds};
+use super::programme::{Programme, Side};
+use crate::curves::{Curve, ReturnCurve};
+use crate::model::{Activity, Problem, Sense, Solution};
+use crate::numeric::CompensatedSum;
 
 /// Activities and pieces of tabulated curves, together, up to which the cross-check runs unless
 /// it is asked for: about a second on one core.
@@ -84,35 +86,7 @@ pub(super) fn cross_check(problem: &Problem, solution: &Solution, when: CrossChe
 }
 
 fn enclose(problem: &Problem, solution: &Solution) -> Result<LpBracket, String> {
-    let count = problem.activities().len();
-    // Where no use is negative, one activity alone can use at most the limit.
-    let caps_all: Vec<bool> = problem
-        .constraints()
-        .iter()
-        .map(|constraint| {
-            constraint.sense != Sense::AtLeast
-                && (0..count).all(|i| constraint.use_per_unit(i) >= 0.0)
-        })
-        .collect();
-    let mut breakpoints: Vec<Breakpoints> = (0..count)
-        .map(|i| {
-            let activity = &problem.activities()[i];
-            let trial = solution.spends.get(i).copied().unwrap_or(f64::NAN);
-            let room = cap_within(problem, &caps_all, i);
-            // A cap that only repeats a row would share that row's price with it.
-            let cap = if room == activity.floor {
-                room
-            } else {
-                activity.cap
-            };
-            let reach = if room.is_finite() {
-                room
-            } else {
-                needed_of(problem, i, trial)
-            };
-            Breakpoints::around(problem.worth(i), activity.floor, cap, reach, trial)
-        })
-        .collect();
+    let mut breakpoints = first_breakpoints(problem, solution);
     let bases: f64 = problem
         .activities()
         .iter()
@@ -125,37 +99,42 @@ fn enclose(problem: &Problem, solution: &Solution) -> Result<LpBracket, String> 
         })
         .sum();
     let sign = problem.aim().sign();
-    let claimed = sign * (problem.total(&solution.spends) - bases);
+    let claimed: f64 = solution
+        .spends
+        .iter()
+        .enumerate()
+        .map(|(i, &spend)| problem.worth(i).value(spend))
+        .collect::<CompensatedSum>()
+        .total();
     let mut rounds = 0;
+    let mut widened = false;
     loop {
         let chords: Vec<Polyline> = breakpoints.iter().map(Breakpoints::chords).collect();
         let tangents: Vec<Polyline> = breakpoints.iter().map(Breakpoints::tangents).collect();
-        let (below, above) = (
-            Programme::new(problem, &chords)?,
-            Programme::new(problem, &tangents)?,
-        );
-        let (least, most) = rayon::join(|| below.solve(), || above.solve());
+        let below = Programme::new(problem, &chords, Side::Below);
+        let above = Programme::new(problem, &tangents, Side::Above)?;
+        let (least, most) = rayon::join(|| below?.solve(), || above.solve());
+        if least.is_err() && !widened {
+            breakpoints.iter_mut().for_each(Breakpoints::widen);
+            widened = true;
+            continue;
+        }
         let (least, most) = (least?, most?);
-        let size = least.worth.abs().max(most.worth.abs());
+        let size = least.scale.max(most.scale);
         let room = BRACKET_TOLERANCE * size;
+        if least.worth > most.worth + room {
+            return Err("the two programmes contradict each other".to_owned());
+        }
         let encloses = least.worth - room <= claimed && claimed <= most.worth + room;
         let closed = most.worth - least.worth <= BRACKET_WIDTH * size;
         // A claim outside the bracket stays outside every narrower one.
         if closed || !encloses || rounds == MOST_ROUNDS {
-            let ends = [sign * least.worth + bases, sign * most.worth + bases];
-            let [lower, upper] = match problem.aim() {
-                Aim::Maximise => ends,
-                Aim::Minimise => [ends[1], ends[0]],
-            };
-            let prices = above
-                .prices()?
-                .into_iter()
-                .map(|price| sign * price)
-                .collect();
+            let ends = [least.worth, most.worth].map(|worth| sign * worth + bases);
+            let prices = above.prices()?;
             return Ok(LpBracket {
-                lower,
-                upper,
-                prices,
+                lower: ends[0].min(ends[1]),
+                upper: ends[0].max(ends[1]),
+                prices: prices.into_iter().map(|price| sign * price).collect(),
                 rounds,
                 encloses,
             });
@@ -170,18 +149,54 @@ fn enclose(problem: &Problem, solution: &Solution) -> Result<LpBracket, String> 
     }
 }
 
-/// The greatest spend of activity `i` that its cap and the limits leave, were all else at
-/// nothing.
-fn cap_within(problem: &Problem, caps_all: &[bool], i: usize) -> f64 {
-    let activity = &problem.activities()[i];
-    let mut cap = activity.cap;
-    for (constraint, caps_all) in problem.constraints().iter().zip(caps_all) {
-        let per_unit = constraint.use_per_unit(i);
-        if per_unit > 0.0 && *caps_all {
-            cap = cap.min(constraint.limit / per_unit);
-        }
-    }
-    cap.max(activity.floor)
+/// Breakpoints round the claimed spends and prices. The bounds hold whatever was claimed.
+fn first_breakpoints(problem: &Problem, solution: &Solution) -> Vec<Breakpoints> {
+    let activities = problem.activities();
+    let floors: Vec<f64> = activities.iter().map(|activity| activity.floor).collect();
+    // What the floors leave of a row under which one activity's spend bounds another's.
+    let left: Vec<Option<f64>> = problem
+        .constraints()
+        .iter()
+        .enumerate()
+        .map(|(k, constraint)| {
+            let shared = constraint.sense != Sense::AtLeast
+                && (0..activities.len()).all(|i| constraint.use_per_unit(i) >= 0.0);
+            shared.then(|| (constraint.limit - problem.used(k, &floors)).max(0.0))
+        })
+        .collect();
+    let prices: Vec<f64> = solution
+        .shadow_prices
+        .iter()
+        .map(|price| problem.aim().sign() * price)
+        .collect();
+    activities
+        .iter()
+        .enumerate()
+        .map(|(i, &Activity { floor, cap, .. })| {
+            let trial = solution.spends.get(i).copied().unwrap_or(f64::NAN);
+            let room = problem
+                .constraints()
+                .iter()
+                .zip(&left)
+                .filter_map(|(constraint, left)| Some((*left)? / constraint.use_per_unit(i)))
+                .filter(|room| room.is_finite())
+                .fold(f64::INFINITY, f64::min);
+            let reach = if room.is_finite() || cap.is_finite() {
+                cap.min(floor + room)
+            } else {
+                needed_of(problem, i, trial)
+            };
+            // A cap that only repeats a row would share that row's price with it.
+            let cap = cap.min(floor + 2.0 * room);
+            let price = price_of_unit(problem.constraints(), &prices, i);
+            Breakpoints::around(
+                problem.worth(i),
+                SpendBounds { floor, cap, reach },
+                trial,
+                price,
+            )
+        })
+        .collect()
 }
 
 /// A finite spend with which an activity without end could meet any limit alone.

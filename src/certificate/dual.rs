@@ -168,7 +168,7 @@ impl Share {
 }
 
 /// p_i = Σ_k λ_k a_ki, worth per unit of spend.
-fn price_of_unit(constraints: &[Constraint], prices: &[f64], i: usize) -> f64 {
+pub(super) fn price_of_unit(constraints: &[Constraint], prices: &[f64], i: usize) -> f64 {
     constraints
         .iter()
         .zip(prices)

@@ -26,38 +26,74 @@ pub(super) struct Polyline {
 #[derive(Debug, Clone)]
 pub(super) struct Breakpoints {
     worth: Curve,
-    floor: f64,
-    cap: f64,
+    range: SpendBounds,
     spends: Vec<f64>,
+    /// Slope, as an amount, beyond which a falling piece is not drawn as steep as it is.
+    steepest: f64,
 }
 
+/// Where the spend of one activity may lie.
+#[derive(Debug, Clone, Copy)]
+pub(super) struct SpendBounds {
+    pub floor: f64,
+    /// The cap, or less where no plan can exceed it; +∞ where there is no end.
+    pub cap: f64,
+    /// A finite spend that no plan worth looking at exceeds.
+    pub reach: f64,
+}
+
+/// Multiples of the claimed price at which an activity's worth is looked at: close enough that
+/// every slope the LP solver sees is of the price's own order, wide enough to contain the answer where
+/// the claim is a little off.
+const LOOKED_AT: [f64; 4] = [8.0, 2.0, 0.5, 0.125];
+
+/// A falling piece may be this many times steeper than the price. A steeper one would not be taken, and
+/// its size would drown the others in the LP solver's absolute tolerance of 1e-10.
+const STEEPEST: f64 = 64.0;
+
 impl Breakpoints {
-    /// The floor, the reach, a trial spend and the middles between them. The reach is the cap, or
-    /// where there is none a finite spend that no plan worth looking at exceeds; of a tabulated
-    /// curve every knot is taken.
-    pub(super) fn around(worth: Curve, floor: f64, cap: f64, reach: f64, trial: f64) -> Self {
-        let reach = reach.min(cap).max(floor);
+    /// The floor, the claimed spend, and those whose last unit earns a multiple of the claimed
+    /// price; where that price says nothing, the middles of the range.
+    pub(super) fn around(worth: Curve, range: SpendBounds, trial: f64, price: f64) -> Self {
+        let SpendBounds { floor, cap, reach } = range;
         let trial = if trial.is_finite() {
             trial.clamp(floor, reach)
         } else {
             reach
         };
+        let tells = price.is_finite();
         let mut around = Self {
             worth,
-            floor,
-            cap,
+            range,
             spends: Vec::new(),
+            steepest: if tells {
+                STEEPEST * price.abs()
+            } else {
+                f64::INFINITY
+            },
         };
-        around.insert(&[
-            floor,
-            f64::midpoint(floor, trial),
-            trial,
-            f64::midpoint(trial, reach),
-            reach,
-        ]);
-        if let Curve::Points(points) = around.worth.clone() {
-            let knots: Vec<f64> = points.knots().map(|knot| knot.spend).collect();
-            around.insert(&knots);
+        around.insert(&[floor, trial]);
+        if tells && price != 0.0 {
+            let earning = LOOKED_AT.map(|multiple| around.worth.inverse_marginal(multiple * price));
+            for spends in earning {
+                let spends = spends.clipped(floor, reach);
+                around.insert(&[spends.least, spends.greatest]);
+            }
+        }
+        let lowest = around.spends[0];
+        let highest = around.spends[around.spends.len() - 1];
+        if !tells || around.touching().next().is_none() {
+            around.insert(&[
+                f64::midpoint(floor, trial),
+                f64::midpoint(trial, reach),
+                reach,
+            ]);
+        }
+        around.insert_knots(lowest, highest);
+        // Without an end a rising tangent would promise an unbounded total.
+        if cap == f64::INFINITY {
+            let top = around.worth.inverse_marginal(0.0).least;
+            around.insert(&[top]);
         }
         around
     }
@@ -74,25 +110,65 @@ impl Breakpoints {
                 more.push(f64::midpoint(spend, next));
             }
             self.insert(&more);
+            let slope = self.worth.marginal(spend).abs();
+            if slope.is_finite() {
+                self.steepest = self.steepest.max(STEEPEST * slope);
+            }
         }
+        self.insert_knots(self.range.floor, self.range.reach);
+    }
+
+    /// Looks at the whole range, for a claim that leaves the chords without a plan.
+    pub(super) fn widen(&mut self) {
+        let SpendBounds { floor, reach, .. } = self.range;
+        let lowest = self.finite().next().map_or(reach, |(spend, _)| spend);
+        self.insert(&[floor + (lowest - floor) / 1024.0, reach]);
+        self.insert_knots(floor, reach);
+        self.steepest = f64::INFINITY;
     }
 
     fn insert(&mut self, spends: &[f64]) {
-        let within = |spend: &f64| self.floor <= *spend && *spend <= self.cap && spend.is_finite();
+        let SpendBounds { floor, cap, .. } = self.range;
+        let within = |spend: &f64| floor <= *spend && *spend <= cap && spend.is_finite();
         self.spends.extend(spends.iter().copied().filter(within));
         self.spends.sort_by(f64::total_cmp);
         self.spends.dedup();
     }
 
-    /// Straight lines between the breakpoints, never above the curve. It begins where the worth is finite;
-    /// a plan on it can be carried out, and is worth at least what the polyline says.
-    pub(super) fn chords(&self) -> Polyline {
-        let finite: Vec<(f64, f64)> = self
-            .spends
+    fn insert_knots(&mut self, from: f64, to: f64) {
+        if let Curve::Points(points) = &self.worth {
+            let knots: Vec<f64> = points.knots().map(|knot| knot.spend).collect();
+            let between = |knot: &f64| from <= *knot && *knot <= to;
+            self.insert(&knots.into_iter().filter(between).collect::<Vec<_>>());
+        }
+    }
+
+    /// The breakpoints with a finite worth.
+    fn finite(&self) -> impl Iterator<Item = (f64, f64)> + '_ {
+        let worth_at = |&spend: &f64| (spend, self.worth.value(spend));
+        self.spends
             .iter()
-            .map(|&spend| (spend, self.worth.value(spend)))
+            .map(worth_at)
             .filter(|(_, worth)| worth.is_finite())
-            .collect();
+    }
+
+    /// The tangents at the breakpoints, on both sides of a knot.
+    fn touching(&self) -> impl Iterator<Item = Tangent> + '_ {
+        self.finite()
+            .flat_map(|(at, worth)| {
+                [self.worth.marginal_before(at), self.worth.marginal(at)].map(|slope| Tangent {
+                    at,
+                    worth,
+                    slope,
+                })
+            })
+            .filter(|tangent| tangent.slope.is_finite())
+    }
+
+    /// Straight lines between the breakpoints, never above the curve. It begins where the worth
+    /// is finite; a plan on it can be carried out, and is worth at least what the polyline says.
+    pub(super) fn chords(&self) -> Polyline {
+        let finite: Vec<(f64, f64)> = self.finite().collect();
         let mut segments: Vec<Segment> = finite
             .windows(2)
             .map(|ends| Segment {
@@ -100,19 +176,20 @@ impl Breakpoints {
                 slope: (ends[1].1 - ends[0].1) / (ends[1].0 - ends[0].0),
             })
             .collect();
-        // Without a cap a straight line goes on as it is; the chords of a curve end at the reach.
-        if self.cap.is_infinite()
-            && self.worth.marginal_at_infinity() == self.worth.marginal(self.floor)
-        {
+        // Without a cap a straight line goes on as it is; the chords of a curve end with the
+        // last breakpoint.
+        let slope = self.worth.marginal_at_infinity();
+        if self.range.cap == f64::INFINITY && slope == self.worth.marginal(self.range.floor) {
             segments.push(Segment {
                 width: f64::INFINITY,
-                slope: self.worth.marginal_at_infinity(),
+                slope,
             });
         }
+        segments.retain(|segment| segment.slope >= -self.steepest);
         let (start, worth) = finite
             .first()
             .copied()
-            .unwrap_or((self.floor, f64::NEG_INFINITY));
+            .unwrap_or((self.range.floor, f64::NEG_INFINITY));
         Polyline {
             start,
             worth,
@@ -121,54 +198,45 @@ impl Breakpoints {
     }
 
     /// Tangents at the breakpoints, cut where they cross: never below the curve, from floor to
-    /// cap.
+    /// cap. A piece that falls more steeply than the steepest is drawn as the steepest, which is
+    /// above it.
     pub(super) fn tangents(&self) -> Polyline {
-        if self.floor == self.cap {
-            let worth = self.worth.value(self.floor);
+        let SpendBounds { floor, cap, .. } = self.range;
+        if floor == cap {
             return Polyline {
-                start: self.floor,
-                worth,
+                start: floor,
+                worth: self.worth.value(floor),
                 segments: Vec::new(),
             };
         }
-        let touching: Vec<Tangent> = self
-            .spends
-            .iter()
-            .map(|&at| Tangent {
-                at,
-                worth: self.worth.value(at),
-                slope: self.worth.marginal(at),
-            })
-            .filter(|tangent| tangent.worth.is_finite() && tangent.slope.is_finite())
-            .collect();
+        let touching: Vec<Tangent> = self.touching().collect();
         let Some(first) = touching.first() else {
             return Polyline {
-                start: self.floor,
+                start: floor,
                 worth: f64::INFINITY,
                 segments: Vec::new(),
             };
         };
-        let worth = first.worth + first.slope * (self.floor - first.at);
+        let worth = first.worth + first.slope * (floor - first.at);
         let mut segments = Vec::with_capacity(touching.len());
-        let mut from = self.floor;
-        for pair in touching.windows(2) {
-            let to = pair[0].crossing(&pair[1]).max(from).min(self.cap);
+        let mut from = floor;
+        let mut draw = |slope: f64, to: f64| {
             if to > from {
                 segments.push(Segment {
                     width: to - from,
-                    slope: pair[0].slope,
+                    slope: slope.max(-self.steepest),
                 });
                 from = to;
             }
+        };
+        for pair in touching.windows(2) {
+            draw(pair[0].slope, pair[0].crossing(&pair[1]).min(cap));
         }
-        if let Some(last) = touching.last().filter(|_| from < self.cap) {
-            segments.push(Segment {
-                width: self.cap - from,
-                slope: last.slope,
-            });
+        if let Some(last) = touching.last() {
+            draw(last.slope, cap);
         }
         Polyline {
-            start: self.floor,
+            start: floor,
             worth,
             segments,
         }

@@ -11,6 +11,7 @@ use good_lp::{
 
 use super::polyline::Polyline;
 use crate::model::{Problem, Sense};
+use crate::numeric::CompensatedSum;
 
 /// One share-of-a-segment variable.
 struct Column {
@@ -33,52 +34,95 @@ pub(super) struct Programme<'a> {
     row_size: Vec<f64>,
     /// The unit of the objective, in units of worth.
     unit: f64,
-    /// Worth of the polylines' starts.
-    offset: f64,
 }
 
 /// The solution of a programme.
 pub(super) struct Optimum {
     /// Its objective, units of worth.
     pub worth: f64,
+    /// Σ of what every activity contributes to it, signs aside; units of worth.
+    pub scale: f64,
     /// The spend of every activity.
     pub spends: Vec<f64>,
 }
 
+/// Which side of the curves the polylines lie on.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub(super) enum Side {
+    /// Chords: what the programme leaves out, it may leave out.
+    Below,
+    /// Tangents: what the programme adds, it may add.
+    Above,
+}
+
+/// A segment is at most this many times as wide as what the rows could ask of its activity. A
+/// wider one would put numbers into a row that differ by more than the LP solver's tolerance bears.
+const WIDEST: f64 = 1e3;
+
+/// A row that its starts exceed by no more than this, relative to the numbers that are summed, is
+/// met by them: their rounding.
+const START_ROUNDING: f64 = 1e-12;
+
 impl<'a> Programme<'a> {
-    pub(super) fn new(problem: &'a Problem, polylines: &'a [Polyline]) -> Result<Self, String> {
+    pub(super) fn new(
+        problem: &'a Problem,
+        polylines: &'a [Polyline],
+        side: Side,
+    ) -> Result<Self, String> {
         let constraints = problem.constraints();
+        let starts: Vec<f64> = polylines.iter().map(|line| line.start).collect();
         let left: Vec<f64> = constraints
             .iter()
-            .map(|constraint| {
-                let started = polylines.iter().enumerate().map(|(i, line)| {
-                    if line.start == 0.0 {
-                        0.0
-                    } else {
-                        constraint.use_per_unit(i) * line.start
-                    }
-                });
-                constraint.limit - started.sum::<f64>()
+            .enumerate()
+            .map(|(k, constraint)| {
+                let used = problem.used(k, &starts);
+                let left = constraint.limit - used;
+                let rounding = START_ROUNDING * constraint.limit.abs().max(used.abs());
+                if -rounding <= left && left < 0.0 {
+                    0.0
+                } else {
+                    left
+                }
             })
             .collect();
         let row_size: Vec<f64> = constraints
             .iter()
             .zip(&left)
-            .map(|(constraint, left)| left.abs().max(f64::EPSILON * constraint.limit.abs()))
-            .map(|size| if size > 0.0 { size } else { 1.0 })
+            .map(|(constraint, left)| {
+                let widest = || {
+                    let used = polylines.iter().enumerate().flat_map(|(i, line)| {
+                        let per_unit = constraint.use_per_unit(i).abs();
+                        line.segments
+                            .iter()
+                            .map(move |segment| per_unit * segment.width)
+                    });
+                    used.filter(|used| used.is_finite()).fold(0.0, f64::max)
+                };
+                let size = if *left == 0.0 { widest() } else { left.abs() };
+                if size > 0.0 { size } else { 1.0 }
+            })
             .collect();
         let mut columns = Vec::new();
         for (activity, line) in polylines.iter().enumerate() {
-            // A segment without end is measured by what the rows could ask of it.
-            let reach = constraints
+            // What the rows could ask of the activity alone.
+            let asked = constraints
                 .iter()
                 .zip(&row_size)
-                .filter(|(constraint, _)| constraint.use_per_unit(activity) != 0.0)
                 .map(|(constraint, size)| size / constraint.use_per_unit(activity).abs())
-                .fold(1.0, f64::max);
+                .filter(|asked| asked.is_finite())
+                .reduce(f64::max);
             for segment in &line.segments {
-                let ends = segment.width.is_finite();
-                let width = if ends { segment.width } else { reach };
+                let (width, ends) = match asked {
+                    Some(asked) if segment.width > WIDEST * asked => {
+                        if side == Side::Above || segment.width.is_infinite() {
+                            (asked, false)
+                        } else {
+                            (WIDEST * asked, true)
+                        }
+                    }
+                    None if segment.width.is_infinite() => (1.0, false),
+                    _ => (segment.width, true),
+                };
                 columns.push(Column {
                     activity,
                     width,
@@ -95,7 +139,6 @@ impl<'a> Programme<'a> {
         for column in &mut columns {
             column.gain /= unit;
         }
-        let offset: f64 = polylines.iter().map(|line| line.worth).sum();
         let programme = Self {
             problem,
             polylines,
@@ -103,7 +146,6 @@ impl<'a> Programme<'a> {
             left,
             row_size,
             unit,
-            offset,
         };
         programme
             .is_finite()
@@ -114,7 +156,7 @@ impl<'a> Programme<'a> {
     /// The LP solver would take a NaN for a zero.
     fn is_finite(&self) -> bool {
         self.unit.is_finite()
-            && self.offset.is_finite()
+            && self.polylines.iter().all(|line| line.worth.is_finite())
             && self.left.iter().all(|left| left.is_finite())
             && self.columns.iter().enumerate().all(|(v, column)| {
                 column.gain.is_finite()
@@ -162,13 +204,14 @@ impl<'a> Programme<'a> {
         }
         let solved = model.solve().map_err(|fault| fault.to_string())?;
         let mut spends: Vec<f64> = self.polylines.iter().map(|line| line.start).collect();
-        let mut gain = 0.0;
+        let mut worths: Vec<f64> = self.polylines.iter().map(|line| line.worth).collect();
         for (column, &share) in self.columns.iter().zip(&shares) {
             spends[column.activity] += column.width * solved.value(share);
-            gain += column.gain * solved.value(share);
+            worths[column.activity] += self.unit * column.gain * solved.value(share);
         }
         Ok(Optimum {
-            worth: self.offset + self.unit * gain,
+            worth: worths.iter().copied().collect::<CompensatedSum>().total(),
+            scale: worths.iter().map(|worth| worth.abs()).sum(),
             spends,
         })
     }
