@@ -26,6 +26,9 @@ pub const BRACKET_WIDTH: f64 = 1e-6;
 /// own tolerance leaves.
 pub const BRACKET_TOLERANCE: f64 = 1e-7;
 
+/// Relative rounding of a limit and of what is used of it.
+const LIMIT_ROUNDING: f64 = 4.0 * f64::EPSILON;
+
 /// Refinements after which the bracket is reported as it is.
 const MOST_ROUNDS: usize = 40;
 
@@ -106,6 +109,14 @@ fn enclose(problem: &Problem, solution: &Solution) -> Result<LpBracket, String> 
         .map(|(i, &spend)| problem.worth(i).value(spend))
         .collect::<CompensatedSum>()
         .total();
+    // The limits are met to their last place, which is worth this much.
+    let last_place: f64 = problem
+        .constraints()
+        .iter()
+        .zip(&solution.shadow_prices)
+        .map(|(constraint, price)| (price * constraint.limit).abs() * LIMIT_ROUNDING)
+        .filter(|worth| worth.is_finite())
+        .sum();
     let mut rounds = 0;
     let mut widened = false;
     loop {
@@ -121,7 +132,7 @@ fn enclose(problem: &Problem, solution: &Solution) -> Result<LpBracket, String> 
         }
         let (least, most) = (least?, most?);
         let size = least.scale.max(most.scale);
-        let room = BRACKET_TOLERANCE * size;
+        let room = BRACKET_TOLERANCE * size + last_place;
         if least.worth > most.worth + room {
             return Err("the two programmes contradict each other".to_owned());
         }

@@ -138,7 +138,7 @@ impl Share {
         let earning = worth
             .inverse_marginal(price)
             .clipped(activity.floor, activity.cap);
-        if earning.least <= spend && spend <= earning.greatest {
+        if earning.least <= spend && spend <= earning.greatest && !price.is_nan() {
             return;
         }
         let gain = worth.value(earning.least) - value - price * (earning.least - spend);
@@ -150,7 +150,8 @@ impl Share {
 
         let (floor, cap) = (activity.floor, activity.cap);
         if spend < cap {
-            let next = worth.marginal((spend * (1.0 + SPEND_ROUNDING)).min(cap));
+            let more = (spend * (1.0 + SPEND_ROUNDING)).max(spend + f64::MIN_POSITIVE);
+            let next = worth.marginal(more.min(cap));
             self.stationarity = worst(self.stationarity, excess(next, price));
         }
         if floor < spend {
@@ -179,9 +180,10 @@ pub(super) fn price_of_unit(constraints: &[Constraint], prices: &[f64], i: usize
         .sum()
 }
 
-/// By how much `greater` exceeds `lesser`, relative to the larger of them; 0 where it does not.
+/// By how much `greater` exceeds `lesser`, relative to the larger of them; 0 where it does not,
+/// or by less than the smallest number that keeps its digits.
 fn excess(greater: f64, lesser: f64) -> f64 {
-    if greater <= lesser {
+    if greater <= lesser || greater - lesser < f64::MIN_POSITIVE {
         return 0.0;
     }
     let size = greater.abs().max(lesser.abs());

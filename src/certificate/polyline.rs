@@ -49,13 +49,17 @@ const LOOKED_AT: [f64; 4] = [8.0, 2.0, 0.5, 0.125];
 
 /// A falling piece may be this many times steeper than the price. A steeper one would not be taken, and
 /// its size would drown the others in the LP solver's absolute tolerance of 1e-10.
-const STEEPEST: f64 = 64.0;
+const STEEPEST: f64 = 16.0;
+
+/// Relative distance below which two breakpoints are one: what lies between them is of the
+/// second order in it.
+const ONE_SPEND: f64 = 1e-12;
 
 impl Breakpoints {
     /// The floor, the claimed spend, and those whose last unit earns a multiple of the claimed
     /// price; where that price says nothing, the middles of the range.
     pub(super) fn around(worth: Curve, range: SpendBounds, trial: f64, price: f64) -> Self {
-        let SpendBounds { floor, cap, reach } = range;
+        let SpendBounds { floor, reach, .. } = range;
         let trial = if trial.is_finite() {
             trial.clamp(floor, reach)
         } else {
@@ -90,11 +94,8 @@ impl Breakpoints {
             ]);
         }
         around.insert_knots(lowest, highest);
-        // Without an end a rising tangent would promise an unbounded total.
-        if cap == f64::INFINITY {
-            let top = around.worth.inverse_marginal(0.0).least;
-            around.insert(&[top]);
-        }
+        let top = around.worth.inverse_marginal(0.0).least;
+        around.insert(&[top]);
         around
     }
 
@@ -132,7 +133,8 @@ impl Breakpoints {
         let within = |spend: &f64| floor <= *spend && *spend <= cap && spend.is_finite();
         self.spends.extend(spends.iter().copied().filter(within));
         self.spends.sort_by(f64::total_cmp);
-        self.spends.dedup();
+        self.spends
+            .dedup_by(|later, earlier| *later - *earlier <= ONE_SPEND * *later);
     }
 
     fn insert_knots(&mut self, from: f64, to: f64) {
@@ -154,13 +156,13 @@ impl Breakpoints {
 
     /// The tangents at the breakpoints, on both sides of a knot.
     fn touching(&self) -> impl Iterator<Item = Tangent> + '_ {
+        // Past its top no curve rises, and a rounding must not promise an unbounded total.
+        let top = self.worth.inverse_marginal(0.0).least * (1.0 - ONE_SPEND);
         self.finite()
-            .flat_map(|(at, worth)| {
-                [self.worth.marginal_before(at), self.worth.marginal(at)].map(|slope| Tangent {
-                    at,
-                    worth,
-                    slope,
-                })
+            .flat_map(move |(at, worth)| {
+                let after = self.worth.marginal(at);
+                let after = if at >= top { after.min(0.0) } else { after };
+                [self.worth.marginal_before(at), after].map(|slope| Tangent { at, worth, slope })
             })
             .filter(|tangent| tangent.slope.is_finite())
     }
@@ -218,14 +220,20 @@ impl Breakpoints {
             };
         };
         let worth = first.worth + first.slope * (floor - first.at);
-        let mut segments = Vec::with_capacity(touching.len());
+        let mut segments: Vec<Segment> = Vec::with_capacity(touching.len());
         let mut from = floor;
         let mut draw = |slope: f64, to: f64| {
             if to > from {
-                segments.push(Segment {
-                    width: to - from,
-                    slope: slope.max(-self.steepest),
-                });
+                let (width, slope) = (to - from, slope.max(-self.steepest));
+                match segments.last_mut() {
+                    Some(Segment {
+                        width: drawn,
+                        slope: same,
+                    }) if *same == slope => {
+                        *drawn += width;
+                    }
+                    _ => segments.push(Segment { width, slope }),
+                }
                 from = to;
             }
         };

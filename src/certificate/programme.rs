@@ -9,7 +9,7 @@ use good_lp::{
     variable,
 };
 
-use super::polyline::Polyline;
+use super::polyline::{Polyline, Segment};
 use crate::model::{Problem, Sense};
 use crate::numeric::CompensatedSum;
 
@@ -57,7 +57,7 @@ pub(super) enum Side {
 
 /// A segment is at most this many times as wide as what the rows could ask of its activity. A
 /// wider one would put numbers into a row that differ by more than the LP solver's tolerance bears.
-const WIDEST: f64 = 1e3;
+const WIDEST: f64 = 4.0;
 
 /// A row that its starts exceed by no more than this, relative to the numbers that are summed, is
 /// met by them: their rounding.
@@ -89,16 +89,18 @@ impl<'a> Programme<'a> {
             .iter()
             .zip(&left)
             .map(|(constraint, left)| {
-                let widest = || {
+                let widest = |rising: bool| {
                     let used = polylines.iter().enumerate().flat_map(|(i, line)| {
                         let per_unit = constraint.use_per_unit(i).abs();
-                        line.segments
-                            .iter()
-                            .map(move |segment| per_unit * segment.width)
+                        let counted = move |segment: &&Segment| !rising || segment.slope > 0.0;
+                        let segments = line.segments.iter().filter(counted);
+                        segments.map(move |segment| per_unit * segment.width)
                     });
                     used.filter(|used| used.is_finite()).fold(0.0, f64::max)
                 };
-                let size = if *left == 0.0 { widest() } else { left.abs() };
+                // What would be spent even without the row is of its size too.
+                let size = left.abs().max(widest(true));
+                let size = if size > 0.0 { size } else { widest(false) };
                 if size > 0.0 { size } else { 1.0 }
             })
             .collect();
