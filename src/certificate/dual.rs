@@ -14,8 +14,8 @@
 use rayon::prelude::*;
 
 use crate::curves::ReturnCurve;
-use crate::model::{Activity, Constraint, Problem, Sense, Solution};
-use crate::numeric::{BLOCK, CompensatedSum};
+use crate::model::{Activity, Constraint, Problem, Sense, Solution, UsePerUnit};
+use crate::numeric::{BLOCK, CompensatedSum, block_sums};
 
 /// Units in the last place to which a spend is taken when its marginal return is compared with
 /// the price. Where a curve is steep, one of them changes the marginal return by more than
@@ -33,7 +33,7 @@ pub(super) struct Residuals {
     pub stationarity: f64,
     /// Greatest |λ_k·slack_k|.
     pub complementarity: f64,
-    /// Σ|f_i(x_i)|, what gap and complementarity are compared with.
+    /// The greater of Σ|f_i(x_i)| and Σ|λ_k b_k|, what gap and complementarity are compared with.
     pub scale: f64,
 }
 
@@ -77,7 +77,8 @@ impl Residuals {
         let mut complementarity: f64 = 0.0;
         for (k, (constraint, &price)) in problem.constraints().iter().zip(&prices).enumerate() {
             let used = problem.used(k, &solution.spends);
-            whole.primal = worst(whole.primal, violation(constraint, used));
+            let size = size_of_use(constraint, used, &solution.spends);
+            whole.primal = worst(whole.primal, violation(constraint, used, size));
             let price_of_slack = match constraint.slack(used) {
                 0.0 => 0.0,
                 slack => price * slack,
@@ -90,6 +91,14 @@ impl Residuals {
             });
         }
         let gap = whole.gap.total();
+        // The dual value is also made of what the limits are worth.
+        let limits_worth: f64 = problem
+            .constraints()
+            .iter()
+            .zip(&prices)
+            .map(|(constraint, price)| (price * constraint.limit).abs())
+            .filter(|worth| worth.is_finite())
+            .sum();
         Self {
             // Rounding can leave a gap of −1e-17; a NaN proves nothing.
             gap: if gap.is_nan() {
@@ -100,11 +109,11 @@ impl Residuals {
             primal: whole.primal,
             stationarity: whole.stationarity,
             complementarity,
-            scale: whole.scale.total(),
+            scale: whole.scale.total().max(limits_worth),
         }
     }
 
-    /// `amount` as a share of Σ|f_i|.
+    /// `amount` as a share of the scale.
     pub(super) fn relative(&self, amount: f64) -> f64 {
         if amount == 0.0 {
             0.0
@@ -202,14 +211,32 @@ fn out_of_bounds(activity: &Activity, spend: f64) -> f64 {
     excess(activity.floor, spend).max(excess(spend, activity.cap))
 }
 
-/// Relative violation of a limit.
-fn violation(constraint: &Constraint, used: f64) -> f64 {
-    let over = excess(used, constraint.limit);
-    let under = excess(constraint.limit, used);
-    match constraint.sense {
-        Sense::AtMost => over,
-        Sense::AtLeast => under,
-        Sense::Equal => over.max(under),
+/// Σ|a_ki x_i|, what a violation is compared with: where uses of both signs cancel, their sum keeps the
+/// rounding of its terms.
+fn size_of_use(constraint: &Constraint, used: f64, spends: &[f64]) -> f64 {
+    match &constraint.use_per_unit {
+        UsePerUnit::Spend => used.abs(),
+        UsePerUnit::PerActivity(per_unit) => {
+            let [size] = block_sums(spends.len(), |i| [(per_unit[i] * spends[i]).abs()]);
+            size
+        }
+    }
+}
+
+/// Violation of a limit, relative to the greater of it and the size of what is used.
+fn violation(constraint: &Constraint, used: f64, size: f64) -> f64 {
+    let over = used - constraint.limit;
+    let violated = match constraint.sense {
+        Sense::AtMost => over.max(0.0),
+        Sense::AtLeast => (-over).max(0.0),
+        Sense::Equal => over.abs(),
+    };
+    if !used.is_finite() {
+        f64::INFINITY
+    } else if violated == 0.0 {
+        0.0
+    } else {
+        violated / size.max(constraint.limit.abs())
     }
 }
 

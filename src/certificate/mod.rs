@@ -57,15 +57,16 @@ pub struct Certificate {
     pub lower_bound: f64,
     /// Greatest value that the best total can have; +∞ where nothing is known.
     pub upper_bound: f64,
-    /// (dual value − total)/Σ|w_i r_i|, the returns without their bases; ≥ 0.
+    /// (dual value − total)/scale, ≥ 0. The scale is the greater of Σ|w_i r_i|, the returns without their
+    /// bases, and Σ|λ_k b_k|, what the limits are worth.
     pub gap: f64,
-    /// Greatest violation of a bound or a limit, relative to the greater of it and what stands
-    /// against it.
+    /// Greatest violation of a bound or a limit, relative to the greater of it and the size of what stands
+    /// against it, Σ|a_ki x_i| for a limit.
     pub primal_residual: f64,
     /// Greatest miss of "marginal return = price of what the unit uses" over the activities,
     /// relative to the greater of the two. A spend is taken to a few units in its last place.
     pub stationarity_residual: f64,
-    /// Greatest |price × slack| over the constraints, relative to Σ|w_i r_i|.
+    /// Greatest |price × slack| over the constraints, relative to the scale of the gap.
     pub complementarity_residual: f64,
     /// The cross-check by linear programming.
     pub lp: LpCheck,
