@@ -306,7 +306,7 @@ fn linear_programmes_with_several_rows_are_proven_at_their_published_prices_alon
             vec![0.0, 1.5, 1.0],
             36.0,
         ),
-        // Chvátal, Linear Programming (1983), ch. 2: 13 at (2, 0, 1), prices 1, 0, 1.
+        // Chvátal, Linear Programming (1983), ch. 2 (from memory): 13 at (2, 0, 1), prices 1, 0, 1.
         (
             plan_of(
                 &[5.0, 4.0, 3.0],
@@ -319,6 +319,22 @@ fn linear_programmes_with_several_rows_are_proven_at_their_published_prices_alon
             vec![2.0, 0.0, 1.0],
             vec![1.0, 0.0, 1.0],
             13.0,
+        ),
+        // Taha, Operations Research, 8th ed., sec. 2.2 and 3.6 (from memory): 21 at (3, 1.5), prices
+        // 3/4, 1/2, 0, 0; one use is negative.
+        (
+            plan_of(
+                &[5.0, 4.0],
+                &[
+                    (&[6.0, 4.0], 24.0),
+                    (&[1.0, 2.0], 6.0),
+                    (&[-1.0, 1.0], 1.0),
+                    (&[0.0, 1.0], 2.0),
+                ],
+            ),
+            vec![3.0, 1.5],
+            vec![0.75, 0.5, 0.0, 0.0],
+            21.0,
         ),
     ];
     for (plan, spends, shadow_prices, best) in cases {
