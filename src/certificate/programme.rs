@@ -218,9 +218,18 @@ impl<'a> Programme<'a> {
         })
     }
 
-    /// Solves the dual, min Σ left_k·y_k + Σ z_v subject to Σ use_kv·y_k + z_v ≥ gain_v, and gives
-    /// the y: the price of every row, units of worth per unit of its limit.
+    /// Solves the dual, min Σ left_k·y_k + Σ size_v·z_v subject to
+    /// Σ use_kv/size_v·y_k + z_v ≥ gain_v/size_v, and gives the y: the price of every row, units of worth
+    /// per unit of its limit. Every row of the dual is divided by the size of its uses, so that a short
+    /// segment is not mistaken for none.
     pub(super) fn prices(&self) -> Result<Vec<f64>, String> {
+        let sizes: Vec<f64> = (0..self.columns.len())
+            .map(|v| {
+                let uses = (0..self.left.len()).map(|k| self.row_use(k, v).abs());
+                let size = uses.fold(0.0, f64::max);
+                if size > 0.0 { size } else { 1.0 }
+            })
+            .collect();
         let mut variables = ProblemVariables::new();
         let prices: Vec<Variable> = self
             .problem
@@ -243,16 +252,20 @@ impl<'a> Programme<'a> {
         let objective: Expression = limits
             .map(|((left, size), &price)| left / size * price)
             .sum::<Expression>()
-            + rents.iter().flatten().copied().sum::<Expression>();
+            + rents
+                .iter()
+                .zip(&sizes)
+                .filter_map(|(rent, &size)| rent.map(|rent| size * rent))
+                .sum::<Expression>();
         let mut model = variables.minimise(objective).using(microlp);
         for (v, (column, rent)) in self.columns.iter().zip(&rents).enumerate() {
             let paid: Expression = prices
                 .iter()
                 .enumerate()
-                .map(|(k, &price)| self.row_use(k, v) * price)
+                .map(|(k, &price)| self.row_use(k, v) / sizes[v] * price)
                 .sum();
             let paid = rent.map_or(paid.clone(), |rent| paid + rent);
-            model.add_constraint(constraint!(paid >= column.gain));
+            model.add_constraint(constraint!(paid >= column.gain / sizes[v]));
         }
         let solved = model.solve().map_err(|fault| fault.to_string())?;
         Ok(prices
