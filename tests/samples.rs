@@ -29,7 +29,7 @@ fn allocate(sample: &str, options: &[&str]) -> String {
 
 /// The report without what changes with the version and with the bytes of the files.
 fn report(sample: &str) -> String {
-    let text = allocate(sample, &["--proof"]);
+    let text = without_gap(&allocate(sample, &[]));
     let version = format!("isomargin {}", env!("CARGO_PKG_VERSION"));
     let kept: Vec<String> = text
         .lines()
@@ -44,6 +44,19 @@ fn report(sample: &str) -> String {
         })
         .collect();
     kept.join("\n")
+}
+
+/// The text without the number of the relative gap, which is rounding alone and differs with the
+/// machine's own exponential and logarithm.
+fn without_gap(text: &str) -> String {
+    const BEFORE: &str = "relative gap ";
+    match text.split_once(BEFORE) {
+        Some((before, after)) => {
+            let (_, after) = after.split_once(')').unwrap();
+            format!("{before}{BEFORE}(rounding)){after}")
+        }
+        None => text.to_owned(),
+    }
 }
 
 fn result(sample: &str) -> Value {
@@ -232,15 +245,19 @@ fn shown_lines(page: &str) -> Vec<String> {
 }
 
 #[test]
-fn the_readme_shows_exactly_what_the_tool_prints() {
+fn the_readme_shows_what_the_tool_prints() {
     let printed = allocate("coastal-flood", &[]);
-    assert_eq!(shown_lines("README.md").join("\n"), printed.trim_end());
+    assert_eq!(
+        without_gap(&shown_lines("README.md").join("\n")),
+        without_gap(printed.trim_end())
+    );
 }
 
 #[test]
 fn the_guide_to_the_report_quotes_the_tool() {
-    let printed = allocate("coastal-flood", &["--proof"]);
-    for line in shown_lines("docs/reading-a-report.md") {
-        assert!(printed.contains(&line), "not printed: {line}");
+    let printed = without_gap(&allocate("coastal-flood", &[]));
+    let quoted = without_gap(&shown_lines("docs/reading-a-report.md").join("\n"));
+    for line in quoted.lines() {
+        assert!(printed.contains(line), "not printed: {line}");
     }
 }
