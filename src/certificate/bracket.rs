@@ -11,8 +11,9 @@ use super::CrossCheck;
 use super::dual::price_of_unit;
 use super::polyline::{Breakpoints, Polyline, SpendBounds};
 use super::programme::{Programme, Side};
+use super::room::Room;
 use crate::curves::{Curve, ReturnCurve};
-use crate::model::{Activity, Problem, Sense, Solution};
+use crate::model::{Activity, Problem, Solution};
 use crate::numeric::CompensatedSum;
 
 /// Activities and pieces of tabulated curves, together, up to which the cross-check runs unless
@@ -44,7 +45,8 @@ pub enum LpCheck {
         /// How many it runs for by default.
         limit: usize,
     },
-    /// The programmes could not be solved; the plan is then not proven.
+    /// The LP solver gave up, as it does where the numbers of a plan lie many powers of ten apart.
+    /// It then says nothing for the plan and nothing against it.
     Failed {
         /// What the LP solver said, in words.
         reason: String,
@@ -163,18 +165,7 @@ fn enclose(problem: &Problem, solution: &Solution) -> Result<LpBracket, String> 
 /// Breakpoints round the claimed spends and prices. The bounds hold whatever was claimed.
 fn first_breakpoints(problem: &Problem, solution: &Solution) -> Vec<Breakpoints> {
     let activities = problem.activities();
-    let floors: Vec<f64> = activities.iter().map(|activity| activity.floor).collect();
-    // What the floors leave of a row under which one activity's spend bounds another's.
-    let left: Vec<Option<f64>> = problem
-        .constraints()
-        .iter()
-        .enumerate()
-        .map(|(k, constraint)| {
-            let shared = constraint.sense != Sense::AtLeast
-                && (0..activities.len()).all(|i| constraint.use_per_unit(i) >= 0.0);
-            shared.then(|| (constraint.limit - problem.used(k, &floors)).max(0.0))
-        })
-        .collect();
+    let rooms = Room::of(problem);
     let prices: Vec<f64> = solution
         .shadow_prices
         .iter()
@@ -185,13 +176,7 @@ fn first_breakpoints(problem: &Problem, solution: &Solution) -> Vec<Breakpoints>
         .enumerate()
         .map(|(i, &Activity { floor, cap, .. })| {
             let trial = solution.spends.get(i).copied().unwrap_or(f64::NAN);
-            let room = problem
-                .constraints()
-                .iter()
-                .zip(&left)
-                .filter_map(|(constraint, left)| Some((*left)? / constraint.use_per_unit(i)))
-                .filter(|room| room.is_finite())
-                .fold(f64::INFINITY, f64::min);
+            let room = rooms.beyond_floor(problem, i);
             let reach = if room.is_finite() || cap.is_finite() {
                 cap.min(floor + room)
             } else {

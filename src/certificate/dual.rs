@@ -13,6 +13,7 @@
 
 use rayon::prelude::*;
 
+use super::room::Room;
 use crate::curves::ReturnCurve;
 use crate::model::{Activity, Constraint, Problem, Sense, Solution, UsePerUnit};
 use crate::numeric::{BLOCK, CompensatedSum, block_sums};
@@ -60,12 +61,13 @@ impl Residuals {
         if solution.spends.len() != count || prices.len() != problem.constraints().len() {
             return Self::nothing_proven();
         }
+        let rooms = Room::of(problem);
         let blocks: Vec<Share> = (0..count.div_ceil(BLOCK))
             .into_par_iter()
             .map(|block| {
                 let mut share = Share::default();
                 for i in block * BLOCK..count.min((block + 1) * BLOCK) {
-                    share.add_activity(problem, &prices, i, solution.spends[i]);
+                    share.add_activity(problem, &prices, &rooms, i, solution.spends[i]);
                 }
                 share
             })
@@ -134,7 +136,14 @@ impl Residuals {
 }
 
 impl Share {
-    fn add_activity(&mut self, problem: &Problem, prices: &[f64], i: usize, spend: f64) {
+    fn add_activity(
+        &mut self,
+        problem: &Problem,
+        prices: &[f64],
+        rooms: &Room,
+        i: usize,
+        spend: f64,
+    ) {
         let activity = &problem.activities()[i];
         let worth = problem.worth(i);
         let price = price_of_unit(problem.constraints(), prices, i);
@@ -142,31 +151,39 @@ impl Share {
         self.scale.add(value.abs());
         self.primal = worst(self.primal, out_of_bounds(activity, spend));
 
-        // What the activity could still gain at this price: nothing at a spend whose last unit
-        // earns it.
-        let earning = worth
-            .inverse_marginal(price)
-            .clipped(activity.floor, activity.cap);
+        // Nothing can be gained at a spend whose last unit earns the price. No plan gives the
+        // activity more than the limits leave beside the floors.
+        let (floor, cap) = (activity.floor, activity.cap);
+        let most = cap.min(floor + rooms.beyond_floor(problem, i));
+        let earning = worth.inverse_marginal(price).clipped(floor, most);
         if earning.least <= spend && spend <= earning.greatest && !price.is_nan() {
             return;
         }
-        let gain = worth.value(earning.least) - value - price * (earning.least - spend);
-        self.gap.add(if gain.is_nan() {
-            f64::INFINITY
-        } else {
-            gain.max(0.0)
-        });
-
-        let (floor, cap) = (activity.floor, activity.cap);
+        // What the next unit earns beyond the price, and what the last one earned below it, at
+        // spends a few roundings away.
+        let mut first_order = 0.0;
         if spend < cap {
             let more = (spend * (1.0 + SPEND_ROUNDING)).max(spend + f64::MIN_POSITIVE);
             let next = worth.marginal(more.min(cap));
             self.stationarity = worst(self.stationarity, excess(next, price));
+            first_order = (next - price).max(0.0) * (earning.least - spend).max(0.0);
         }
         if floor < spend {
-            let last = worth.marginal_before((spend * (1.0 - SPEND_ROUNDING)).max(floor));
+            let less = (spend * (1.0 - SPEND_ROUNDING)).max(floor);
+            let last = worth.marginal_before(less);
             self.stationarity = worst(self.stationarity, excess(price, last));
+            first_order += (price - last).max(0.0) * (spend - earning.least).max(0.0);
         }
+        // A concave worth gains no more than its slope says. Where that is less than the
+        // difference of two large values can tell, it is the better bound.
+        let gain = worth.value(earning.least) - value - price * (earning.least - spend);
+        let gain = gain.max(0.0).min(first_order);
+        self.gap
+            .add(if gain.is_nan() || first_order.is_nan() || price.is_nan() {
+                f64::INFINITY
+            } else {
+                gain
+            });
     }
 
     fn join(&mut self, later: Self) {

@@ -60,7 +60,10 @@ fn cross_check_line(lp: &LpCheck, units: Units) -> String {
             figures::fixed(*limit as f64, 0)
         ),
         LpCheck::Failed { reason } => {
-            format!("The cross-check by linear programming failed: {reason}.")
+            format!(
+                "The cross-check by linear programming could not be made, and says nothing for \
+                 or against the plan: {reason}."
+            )
         }
     }
 }
@@ -78,7 +81,7 @@ pub(super) fn certificate_facts(
         Fact::new("Upper bound", bound(certificate.upper_bound)),
         Fact::new(
             "Gap",
-            format!("{} of the returns", residual(certificate.gap)),
+            format!("{} of the plan's scale", residual(certificate.gap)),
         ),
         Fact::new(
             "Limits and bounds",
