@@ -6,7 +6,7 @@ use super::{Family, Parameter};
 #[derive(Debug, Clone, PartialEq, thiserror::Error)]
 pub enum CurveError {
     /// The family needs a parameter that is not given.
-    #[error("a {family} curve needs a {parameter}")]
+    #[error("the {family} curve needs a number for {parameter}")]
     Missing {
         /// The curve's family.
         family: Family,
@@ -14,7 +14,7 @@ pub enum CurveError {
         parameter: Parameter,
     },
     /// A parameter is given that the family does not have.
-    #[error("a {family} curve has no {parameter}")]
+    #[error("the {family} curve has no {parameter}")]
     NotUsed {
         /// The curve's family.
         family: Family,
@@ -22,7 +22,7 @@ pub enum CurveError {
         parameter: Parameter,
     },
     /// A parameter lies outside its domain.
-    #[error("the {parameter} of a {family} curve must be {rule}, not {found}")]
+    #[error("the {parameter} of the {family} curve must be {rule}, not {found}")]
     OutOfDomain {
         /// The curve's family.
         family: Family,
