@@ -3,15 +3,16 @@
 use compact_str::CompactString;
 use rayon::prelude::*;
 
-use super::faults::Diagnostics;
+use super::currency::Currencies;
+use super::faults::{Diagnostics, Spot};
 use super::header::{Columns, ExtraColumn};
 use super::names::{repeated, trimmed};
 use super::notes::{Note, Readings};
 use super::place::cell_of;
-use super::points::PointsTable;
+use super::points::PointsState;
 use super::rows::Part;
 use super::table::Table;
-use crate::model::{Activity, Aim, Constraint, ModelError, Problem};
+use crate::model::{Activity, Aim, Constraint, Problem};
 
 /// The activities of a plan, and what is needed to point at any of their cells.
 pub(super) struct ActivitiesTable<'a> {
@@ -19,8 +20,9 @@ pub(super) struct ActivitiesTable<'a> {
     columns: Columns,
     pub activities: Vec<Activity>,
     /// Where the record of each activity begins.
-    starts: Vec<usize>,
+    pub starts: Vec<usize>,
     pub extra: Vec<ExtraColumn>,
+    pub currencies: Currencies,
 }
 
 impl<'a> ActivitiesTable<'a> {
@@ -32,7 +34,7 @@ impl<'a> ActivitiesTable<'a> {
     pub(super) fn read(
         file: &str,
         bytes: &'a [u8],
-        points: Option<&PointsTable>,
+        points: PointsState,
     ) -> Result<(Self, Diagnostics), Diagnostics> {
         let mut table = Table::open(file, bytes, super::header::ACTIVITY)?;
         let (columns, mut faults) = Columns::of(&table)?;
@@ -55,7 +57,7 @@ impl<'a> ActivitiesTable<'a> {
             .iter()
             .map(|&column| ExtraColumn::new(&table.header[column]))
             .collect();
-        let mut capped_at_last_knot = 0;
+        let (mut capped_at_last_knot, mut empty_rows) = (0, 0);
         for part in parts {
             let mut part = part?;
             activities.append(&mut part.activities);
@@ -64,13 +66,15 @@ impl<'a> ActivitiesTable<'a> {
             for (column, later) in extra.iter_mut().zip(&part.extra) {
                 column.append(later);
             }
-            faults.append(part.faults);
-            for (how, cell) in part.readings {
-                readings.count(how, &cell);
-            }
+            faults.append_found(part.faults, |spot| table.place_of(spot));
+            faults.append(part.points_faults);
+            readings.append(part.readings);
+            empty_rows += part.empty_rows;
             capped_at_last_knot += part.capped_at_last_knot;
         }
+        let currencies = readings.currencies.clone();
         table.notes.extend(readings.notes(file));
+        table.notes.extend(Note::of_empty_rows(file, empty_rows));
         if capped_at_last_knot > 0 {
             let curves = if capped_at_last_knot == 1 {
                 "curve ends"
@@ -87,11 +91,12 @@ impl<'a> ActivitiesTable<'a> {
             activities,
             starts,
             extra,
+            currencies,
         };
-        if read.activities.is_empty() && faults.is_empty() {
+        if read.activities.is_empty() && refused.is_empty() && faults.is_empty() {
             return Err(Diagnostics::of(
                 "a table without rows",
-                read.table.row_place(0),
+                read.table.header_row_place(),
                 format!("{file} has a header and no rows"),
                 "add a row for every activity",
             ));
@@ -101,7 +106,7 @@ impl<'a> ActivitiesTable<'a> {
     }
 
     /// The name in the record that begins at `start`.
-    fn name_at(&self, start: usize) -> String {
+    pub(super) fn name_at(&self, start: usize) -> String {
         let cell = cell_of(
             &self.table.text,
             start,
@@ -113,6 +118,7 @@ impl<'a> ActivitiesTable<'a> {
 
     /// Looks through the names of all rows, the refused ones among them.
     fn find_repeated_names(&self, refused: &[(CompactString, usize)], faults: &mut Diagnostics) {
+        const NAME_TWICE: &str = "a name twice";
         let read = self.activities.len();
         let name = |i: usize| match i.checked_sub(read) {
             Some(i) => refused[i].0.as_str(),
@@ -123,6 +129,10 @@ impl<'a> ActivitiesTable<'a> {
                 .map_or_else(|| self.starts[i], |i| refused[i].1)
         };
         for (one, other) in repeated(read + refused.len(), name) {
+            if !faults.keeps(NAME_TWICE) {
+                faults.count_one(NAME_TWICE);
+                continue;
+            }
             let (first, again) = if start(one) < start(other) {
                 (one, other)
             } else {
@@ -135,10 +145,12 @@ impl<'a> ActivitiesTable<'a> {
                 " but for case or spaces"
             };
             faults.add(
-                "a name twice",
+                NAME_TWICE,
                 || {
-                    self.table
-                        .place(start(again), self.columns.activity, Some("activity"))
+                    self.table.place_of(Spot {
+                        start: start(again),
+                        column: Some(self.columns.activity),
+                    })
                 },
                 format!("\"{}\" has the same name as line {line}{how}", name(again)),
                 "give every activity a name of its own, or join the rows",
@@ -164,62 +176,5 @@ impl<'a> ActivitiesTable<'a> {
                 None
             }
         }
-    }
-
-    /// Points at the cells that a fault of the model is about.
-    fn explain(&self, fault: &ModelError, faults: &mut Diagnostics) {
-        let (i, column, kind, mend) = match fault {
-            ModelError::Number {
-                activity, field, ..
-            } => (
-                *activity,
-                field.name(),
-                "a number out of range",
-                "correct it".to_owned(),
-            ),
-            ModelError::FloorAboveCap { activity, .. } => {
-                let mend = "lower the floor or raise the cap".to_owned();
-                (*activity, "floor", "a floor above its cap", mend)
-            }
-            ModelError::OutsideTable {
-                activity,
-                floor,
-                first,
-                last,
-                ..
-            } if floor < first => {
-                let mend = format!(
-                    "add a point for a spend of 0, or give it a floor of at least {first} (the \
-                     points run from {first} to {last})"
-                );
-                (*activity, "floor", "bounds beyond the points", mend)
-            }
-            ModelError::OutsideTable { activity, last, .. } => {
-                let mend = format!("lower the cap to {last}, or add points beyond it");
-                (*activity, "cap", "bounds beyond the points", mend)
-            }
-            ModelError::Shape(shape) => (
-                shape.activity,
-                super::header::CURVE,
-                "a curve of the wrong shape",
-                shape.mend(),
-            ),
-            _ => return,
-        };
-        let what = match fault {
-            ModelError::Shape(shape) => shape.reason(),
-            other => other.to_string(),
-        };
-        let start = self.starts[i];
-        let place = || match self.table.column(column) {
-            Some(at) => self.table.place(start, at, Some(column)),
-            None => self.table.row_place(start),
-        };
-        faults.add(
-            kind,
-            place,
-            format!("{}: {what}", self.name_at(start)),
-            mend,
-        );
     }
 }

@@ -1,27 +1,31 @@
 //! How a table is written: what separates its cells, and which sign is its decimal point.
 
-use super::amount;
+use super::digits::{DecimalSign, decimal_sign_of};
 
 /// What separates the cells of a table, and how its numbers are written.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub(super) struct Dialect {
     /// `,` `;` or tab.
     pub separator: u8,
-    /// Whether a single comma in a number is its decimal point.
-    pub decimal_comma: bool,
+    /// The decimal sign of its numbers. Where commas separate cells it is the point.
+    pub decimal: DecimalSign,
 }
 
 impl Dialect {
     /// The dialect of a table, from its header row and, where its numbers could have decimal
     /// commas, from all of its cells.
     pub(super) fn of(text: &str, key_column: &str) -> Self {
-        let header = text.lines().next().unwrap_or_default();
+        let header = text
+            .split(['\n', '\r'])
+            .find(|line| !line.trim().is_empty())
+            .unwrap_or_default();
         let separator = separator_of(header, key_column);
-        let decimal_comma = separator != b',' && has_decimal_commas(text, separator);
-        Self {
-            separator,
-            decimal_comma,
-        }
+        let decimal = if separator == b',' {
+            DecimalSign::Point
+        } else {
+            decimal_sign(text, separator)
+        };
+        Self { separator, decimal }
     }
 
     /// The separator in words.
@@ -51,15 +55,20 @@ fn separator_of(header: &str, key_column: &str) -> u8 {
     found.first().copied().unwrap_or(b',')
 }
 
-/// Whether some number of the table has a comma that can only be its decimal point, and none
-/// has such a point.
-fn has_decimal_commas(text: &str, separator: u8) -> bool {
-    let cells = || {
-        text.lines()
-            .skip(1)
-            .flat_map(|line| line.split(char::from(separator)))
-            .map(|cell| cell.trim().trim_matches('"'))
-    };
-    cells().any(|cell| amount::is_surely_decimal(cell, ','))
-        && !cells().any(|cell| amount::is_surely_decimal(cell, '.'))
+/// The decimal sign that the cells agree on.
+fn decimal_sign(text: &str, separator: u8) -> DecimalSign {
+    let (mut points, mut commas) = (false, false);
+    let cells = text.split(['\n', '\r', char::from(separator)]);
+    for cell in cells {
+        match decimal_sign_of(cell.trim().trim_matches('"')) {
+            DecimalSign::Point => points = true,
+            DecimalSign::Comma => commas = true,
+            DecimalSign::Unknown => {}
+        }
+    }
+    match (points, commas) {
+        (true, false) => DecimalSign::Point,
+        (false, true) => DecimalSign::Comma,
+        _ => DecimalSign::Unknown,
+    }
 }

@@ -22,25 +22,29 @@ pub(super) fn decode<'a>(
     if let Some((utf16, name)) = utf16_of(bytes) {
         let (text, _, broken) = utf16.decode(bytes);
         if broken {
-            return Err(no_text(
-                file,
-                &format!("it looks like {name} and is broken"),
-            ));
+            let why = format!("it looks like {name} and is broken");
+            return Err(no_text(Place::file(file), &why));
         }
         return Ok((text, Some(Note::reading(format!("{file}: read as {name}")))));
     }
-    if memchr::memchr(0, bytes).is_some() {
-        return Err(no_text(file, "it holds zero bytes"));
+    if let Some(zero) = memchr::memchr(0, bytes) {
+        let place = Place::in_bytes(file, bytes, zero);
+        return Err(no_text(place, "it holds zero bytes"));
     }
     match std::str::from_utf8(bytes) {
         Ok(text) => Ok((
             Cow::Borrowed(text.strip_prefix('\u{feff}').unwrap_or(text)),
             None,
         )),
-        Err(_) => {
+        Err(fault) => {
+            let place = || Place::in_bytes(file, bytes, fault.valid_up_to());
+            if is_mostly_utf8(bytes) {
+                return Err(no_text(place(), "it is UTF-8 with a broken character"));
+            }
             let (text, _, _) = WINDOWS_1252.decode(bytes);
             if text.contains(is_odd_control) {
-                return Err(no_text(file, "it is neither UTF-8 nor Windows-1252"));
+                let why = "it is neither UTF-8 nor Windows-1252";
+                return Err(no_text(place(), why));
             }
             let note = Note::reading(format!("{file}: not UTF-8, read as Windows-1252"));
             Ok((text, Some(note)))
@@ -71,15 +75,22 @@ fn utf16_of(bytes: &[u8]) -> Option<(&'static Encoding, &'static str)> {
     }
 }
 
+/// Whether a text that is not UTF-8 throughout has a mark of UTF-8 or a whole character of more
+/// than one byte. In Windows-1252 such pairs are two signs that hardly ever follow each other, and
+/// reading UTF-8 so would garble every name.
+fn is_mostly_utf8(bytes: &[u8]) -> bool {
+    bytes.starts_with(b"\xef\xbb\xbf") || bytes.utf8_chunks().any(|chunk| !chunk.valid().is_ascii())
+}
+
 fn is_odd_control(character: char) -> bool {
     character.is_control() && !matches!(character, '\n' | '\r' | '\t')
 }
 
-fn no_text(file: &str, why: &str) -> Diagnostics {
+fn no_text(place: Place, why: &str) -> Diagnostics {
     Diagnostics::of(
         "not a text file",
-        Place::file(file),
+        place,
         format!("this is not a text file: {why}"),
-        "save the table as CSV in UTF-8",
+        "save it again as text in UTF-8; a table as CSV",
     )
 }

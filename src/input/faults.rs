@@ -6,6 +6,7 @@ use std::fmt;
 use annotate_snippets::{AnnotationKind, Group, Level, Renderer, Snippet};
 
 use super::place::Place;
+use crate::numeric::figures::amount;
 
 /// Faults of one kind that are kept with their place; more are only counted.
 const KEPT_PER_KIND: usize = 20;
@@ -42,9 +43,8 @@ impl Diagnostics {
         what: impl Into<String>,
         mend: impl Into<String>,
     ) {
-        let count = self.counts.entry(kind).or_default();
-        *count += 1;
-        if *count <= KEPT_PER_KIND {
+        self.count_one(kind);
+        if self.keeps(kind) {
             self.faults.push(Fault {
                 kind,
                 place: place(),
@@ -56,10 +56,42 @@ impl Diagnostics {
 
     /// Adds the faults of another file.
     pub(super) fn append(&mut self, other: Self) {
-        self.faults.extend(other.faults);
+        for fault in other.faults {
+            if self.keeps(fault.kind) {
+                self.faults.push(fault);
+            }
+        }
         for (kind, count) in other.counts {
             *self.counts.entry(kind).or_default() += count;
         }
+    }
+
+    /// Adds the faults of a part of a table, whose places `locate` finds.
+    pub(super) fn append_found(&mut self, found: FoundFaults, locate: impl Fn(Spot) -> Place) {
+        for (kind, spot, what, mend) in found.kept {
+            if self.keeps(kind) {
+                self.faults.push(Fault {
+                    kind,
+                    place: locate(spot),
+                    what,
+                    mend,
+                });
+            }
+        }
+        for (kind, count) in found.counts {
+            *self.counts.entry(kind).or_default() += count;
+        }
+    }
+
+    /// Whether one more fault of this kind is kept. Words and places of others need not be made.
+    pub(super) fn keeps(&self, kind: &str) -> bool {
+        let kept = self.faults.iter().filter(|fault| fault.kind == kind);
+        kept.count() < KEPT_PER_KIND
+    }
+
+    /// Counts a fault that is not kept.
+    pub(super) fn count_one(&mut self, kind: &'static str) {
+        *self.counts.entry(kind).or_default() += 1;
     }
 
     pub(super) fn is_empty(&self) -> bool {
@@ -105,15 +137,54 @@ impl Diagnostics {
         }
         for (kind, &count) in &self.counts {
             if let Some(more) = count.checked_sub(KEPT_PER_KIND).filter(|&more| more > 0) {
-                out.push_str(&format!("… and {more} more: {kind}\n"));
+                let more = amount(more as f64);
+                out.push_str(&format!("and {more} more of the same kind: {kind}\n"));
             }
         }
         let faults = if self.count() == 1 { "fault" } else { "faults" };
         out.push_str(&format!(
             "{} {faults}; nothing was computed\n",
-            self.count()
+            amount(self.count() as f64)
         ));
         out
+    }
+}
+
+/// Where a fault stands in a table before its place is looked for.
+#[derive(Debug, Clone, Copy)]
+pub(super) struct Spot {
+    /// The byte where the record begins.
+    pub start: usize,
+    /// The column, from 0; `None` for the whole record.
+    pub column: Option<usize>,
+}
+
+/// Faults of a part of a table, kept and counted like the others. A million of them must cost no
+/// million looks for a line.
+#[derive(Debug, Default)]
+pub(super) struct FoundFaults {
+    kept: Vec<(&'static str, Spot, String, String)>,
+    counts: BTreeMap<&'static str, usize>,
+}
+
+impl FoundFaults {
+    /// Adds a fault whose words, what is wrong and the mend, are only asked for where it is kept.
+    pub(super) fn add(
+        &mut self,
+        kind: &'static str,
+        spot: Spot,
+        words: impl FnOnce() -> (String, String),
+    ) {
+        let count = self.counts.entry(kind).or_default();
+        *count += 1;
+        if *count <= KEPT_PER_KIND {
+            let (what, mend) = words();
+            self.kept.push((kind, spot, what, mend));
+        }
+    }
+
+    pub(super) fn count(&self) -> usize {
+        self.counts.values().sum()
     }
 }
 

@@ -121,14 +121,18 @@ impl Columns {
                 continue;
             }
             extra.push(column);
-            let absent = known
+            // That of a column which must be there has been said.
+            let absent = known[2..]
                 .iter()
                 .copied()
                 .filter(|known| table.column(known).is_none());
-            if let Some(meant) = nearest(name, absent) {
+            // A unit in brackets behind a known name: cap_(eur).
+            let bare = name.split(['(', '[']).next().unwrap_or(name);
+            let bare = bare.trim_end_matches('_');
+            if let Some(meant) = nearest(bare, absent) {
                 faults.add(
                     "a misspelt column",
-                    || table.place(0, column, Some(name)),
+                    || table.header_place(column),
                     format!(
                         "\"{name}\" is not a column that isomargin knows; did you mean \"{meant}\"?"
                     ),
@@ -164,7 +168,7 @@ pub(super) fn missing_columns(table: &Table, needed: &[&str]) -> Diagnostics {
             };
             faults.add(
                 "a missing column",
-                || table.row_place(0),
+                || table.header_row_place(),
                 format!("{} has no column named {name}", table.file),
                 mend,
             );
@@ -173,13 +177,33 @@ pub(super) fn missing_columns(table: &Table, needed: &[&str]) -> Diagnostics {
     faults
 }
 
+/// Slips up to which a word may be a known one misspelt. In a word of three letters a letter
+/// changed makes another word: a map is no cap.
+fn slips_in(word: &str, known: &str) -> usize {
+    let letters = |word: &str| {
+        let mut letters: Vec<char> = word.chars().collect();
+        letters.sort_unstable();
+        letters
+    };
+    match known.len() {
+        0..=3 if word.len() == known.len() && letters(word) != letters(known) => 0,
+        0..=5 => 1,
+        _ => 2,
+    }
+}
+
 /// The known word that a misspelt one is nearest to, if it is near at all: one slip of the
 /// fingers, or two in a long word.
 pub(super) fn nearest<'k>(word: &str, known: impl Iterator<Item = &'k str>) -> Option<&'k str> {
     let word = word.to_lowercase();
     known
-        .map(|known| (strsim::damerau_levenshtein(&word, known), known))
-        .filter(|(slips, known)| *slips <= if known.len() > 5 { 2 } else { 1 })
+        .map(|known| {
+            (
+                strsim::damerau_levenshtein(&word, &known.to_lowercase()),
+                known,
+            )
+        })
+        .filter(|(slips, known)| *slips <= slips_in(&word, known))
         .min_by_key(|(slips, _)| *slips)
         .map(|(_, known)| known)
 }

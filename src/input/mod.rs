@@ -8,12 +8,16 @@
 
 mod activities;
 mod amount;
+mod currency;
 mod dialect;
+mod digits;
 mod encoding;
 mod faults;
 mod header;
+mod misfits;
 mod names;
 mod notes;
+mod parameters;
 pub mod place;
 mod plan;
 mod plan_file;

@@ -27,11 +27,17 @@ pub(super) fn trimmed(name: &str) -> &str {
 
 /// Whether a row of this name adds up the others.
 pub(super) fn is_total(name: &str) -> bool {
-    let first = name.as_bytes().first();
-    if !matches!(
-        first,
-        Some(b'T' | b't' | b'S' | b's' | b'G' | b'g' | b'O' | b'o' | b'A' | b'a')
-    ) {
+    // Most names are told by two letters that none of these words begins with.
+    let begins_so = name
+        .as_bytes()
+        .first_chunk()
+        .is_some_and(|letters: &[u8; 2]| {
+            let letters = letters.map(|letter| letter.to_ascii_lowercase());
+            TOTALS
+                .iter()
+                .any(|word| word.as_bytes().starts_with(&letters))
+        });
+    if !begins_so {
         return false;
     }
     TOTALS.contains(&folded(name).trim_end_matches([':', '.']))
@@ -73,7 +79,8 @@ fn hash_of(name: &str) -> u64 {
     hasher.finish()
 }
 
-/// Pairs of equal names: the index of the first and of each later one, in order.
+/// Pairs of equal names: the index of the first and of each later one, in order. Names of nothing
+/// are no names.
 pub(super) fn repeated<'n>(
     count: usize,
     name: impl Fn(usize) -> &'n str + Sync,
@@ -86,7 +93,7 @@ pub(super) fn repeated<'n>(
     let mut repeated = Vec::new();
     for alike in by_hash
         .chunk_by(|one, other| one.0 == other.0)
-        .filter(|alike| alike.len() > 1)
+        .filter(|alike| alike.len() > 1 && !name(alike[0].1 as usize).is_empty())
     {
         // Names that share a hash by chance are told apart here.
         let mut first: Vec<usize> = Vec::new();

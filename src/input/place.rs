@@ -44,15 +44,12 @@ impl Place {
     /// The bytes `cell` of a file's text.
     pub fn in_text(file: &str, text: &str, cell: Range<usize>, column: Option<&str>) -> Self {
         let start = floor_boundary(text, cell.start);
-        let line_start = text[..start].rfind('\n').map_or(0, |newline| newline + 1);
-        let line_end = text[start..]
-            .find(['\n', '\r'])
-            .map_or(text.len(), |length| start + length);
+        let bytes = text.as_bytes();
+        let line_start = memchr::memrchr2(b'\n', b'\r', &bytes[..start]).map_or(0, |end| end + 1);
+        let line_end =
+            memchr::memchr2(b'\n', b'\r', &bytes[start..]).map_or(text.len(), |end| start + end);
         let end = floor_boundary(text, cell.end.min(line_end).max(start));
-        let line = 1 + text.as_bytes()[..line_start]
-            .iter()
-            .filter(|&&byte| byte == b'\n')
-            .count();
+        let line = 1 + line_ends(&bytes[..line_start]);
         Self {
             file: file.to_owned(),
             line: Some(line),
@@ -61,6 +58,27 @@ impl Place {
                 &text[line_start..line_end],
                 start - line_start..end - line_start,
             )),
+        }
+    }
+
+    /// A byte of a file that is no text: the line round it, as far as it can be read.
+    pub fn in_bytes(file: &str, bytes: &[u8], at: usize) -> Self {
+        let at = at.min(bytes.len());
+        let from = memchr::memrchr(b'\n', &bytes[..at])
+            .map_or(0, |end| end + 1)
+            .max(at.saturating_sub(EXCERPT_MARGIN));
+        let to = memchr::memchr(b'\n', &bytes[at..]).map_or(bytes.len(), |end| at + end);
+        let before = String::from_utf8_lossy(&bytes[from..at]);
+        let after = String::from_utf8_lossy(&bytes[at..to.min(at + EXCERPT_MARGIN)]);
+        let width = after.chars().next().map_or(0, char::len_utf8);
+        let cell = before.len()..before.len() + width;
+        let line = format!("{before}{}", after.trim_end_matches('\r'));
+        let cell = cell.start..cell.end.min(line.len());
+        Self {
+            file: file.to_owned(),
+            line: Some(1 + line_ends(&bytes[..at])),
+            column: None,
+            excerpt: Some(Excerpt::cut(&line, cell)),
         }
     }
 
@@ -117,6 +135,16 @@ impl Excerpt {
             text,
         }
     }
+}
+
+/// How many lines end in these bytes: with `\n`, `\r\n`, or the `\r` of old.
+fn line_ends(bytes: &[u8]) -> usize {
+    let newlines = memchr::memchr_iter(b'\n', bytes).count();
+    let returns = memchr::memchr_iter(b'\r', bytes);
+    newlines
+        + returns
+            .filter(|&at| bytes.get(at + 1) != Some(&b'\n'))
+            .count()
 }
 
 /// A character as it can stand in an excerpt.

@@ -6,6 +6,7 @@ use std::path::{Path, PathBuf};
 use toml::de::{DeTable, DeValue};
 
 use super::amount::parse_amount;
+use super::currency::Currencies;
 use super::encoding::decode;
 use super::faults::Diagnostics;
 use super::header::nearest;
@@ -25,6 +26,23 @@ const KEYS: [&str; 9] = [
     "points",
 ];
 
+/// A table of a plan.
+#[derive(Debug)]
+pub(super) struct TableFile {
+    pub path: PathBuf,
+    /// Where a plan file names it.
+    pub place: Option<Place>,
+}
+
+impl TableFile {
+    pub(super) fn named(path: &Path) -> Self {
+        Self {
+            path: path.to_owned(),
+            place: None,
+        }
+    }
+}
+
 /// What a plan file says.
 #[derive(Debug, Default)]
 pub(super) struct PlanFile {
@@ -32,22 +50,25 @@ pub(super) struct PlanFile {
     pub aim: Option<Aim>,
     pub budget: Option<f64>,
     pub require: Option<f64>,
-    pub activities: PathBuf,
-    pub points: Option<PathBuf>,
+    pub activities: Option<TableFile>,
+    pub points: Option<TableFile>,
     pub notes: Vec<Note>,
+    pub currencies: Currencies,
     /// Where `require`, or else `budget`, stands.
     pub limit_place: Option<Place>,
 }
 
 /// Reads a plan file; the paths in it are relative to the folder that it lies in.
 ///
+/// The faults of its keys and values come along.
+///
 /// # Errors
-/// Every fault of the file.
+/// A file that is no TOML.
 pub(super) fn read_plan_file(
     path: &Path,
     file: &str,
     bytes: &[u8],
-) -> Result<PlanFile, Diagnostics> {
+) -> Result<(PlanFile, Diagnostics), Diagnostics> {
     let (text, decoded) = decode(file, bytes)?;
     let table = DeTable::parse(&text).map_err(|fault| {
         let span = fault.span().unwrap_or(0..0);
@@ -68,10 +89,11 @@ pub(super) fn read_plan_file(
         text: &text,
         faults: Diagnostics::default(),
         notes: decoded.into_iter().collect(),
+        currencies: Currencies::default(),
     };
     let mut plan = PlanFile::default();
     let folder = path.parent().unwrap_or(Path::new(""));
-    let mut activities = None;
+    let mut names_activities = false;
     for (key, value) in table.get_ref() {
         let (name, span) = (key.get_ref().as_ref(), value.span());
         let value = value.get_ref();
@@ -90,42 +112,28 @@ pub(super) fn read_plan_file(
                 plan.limit_place = Some(reader.place(span.clone(), name));
                 plan.require = reader.amount_of(name, value, span);
             }
-            "activities" => activities = reader.text_of(name, value, span),
-            "points" => {
-                plan.points = reader
-                    .text_of(name, value, span)
-                    .map(|name| folder.join(name))
+            "activities" => {
+                names_activities = true;
+                plan.activities = reader.table_of(name, value, span, folder);
             }
+            "points" => plan.points = reader.table_of(name, value, span, folder),
             unknown => reader.refuse_key(unknown, key.span()),
         }
     }
-    if plan.budget.is_some() && plan.require.is_some() {
-        let place = plan
-            .limit_place
-            .clone()
-            .unwrap_or_else(|| Place::file(file));
+    if !names_activities {
         reader.faults.add(
-            "two limits",
-            || place,
-            "a plan has a budget or a requirement, not both",
-            "delete one of budget and require",
-        );
-    }
-    match activities {
-        Some(name) => plan.activities = folder.join(name),
-        None if reader.faults.is_empty() => reader.faults.add(
             "a plan without activities",
             || Place::file(file),
             format!("{file} does not name its table of activities"),
             "add a line such as activities = \"activities.csv\"",
-        ),
-        None => {}
-    }
-    if !reader.faults.is_empty() {
-        return Err(reader.faults);
+        );
     }
     plan.notes = reader.notes;
-    Ok(plan)
+    plan.currencies = reader.currencies;
+    if let Some(money) = &plan.labels.money {
+        plan.currencies.add_unit(money);
+    }
+    Ok((plan, reader.faults))
 }
 
 struct Reader<'a> {
@@ -133,6 +141,7 @@ struct Reader<'a> {
     text: &'a str,
     faults: Diagnostics,
     notes: Vec<Note>,
+    currencies: Currencies,
 }
 
 impl Reader<'_> {
@@ -160,18 +169,37 @@ impl Reader<'_> {
     }
 
     fn text_of(&mut self, key: &str, value: &DeValue, span: Range<usize>) -> Option<String> {
-        match value {
-            DeValue::String(text) => Some(text.trim().to_owned()).filter(|text| !text.is_empty()),
-            _ => {
-                self.refuse(
-                    key,
-                    span,
-                    format!("{key} must be a text"),
-                    "put it in double quotes",
-                );
-                None
-            }
+        let DeValue::String(text) = value else {
+            let what = format!("{key} must be a text");
+            self.refuse(key, span, what, "put it in double quotes");
+            return None;
+        };
+        let text = text.trim();
+        if text.is_empty() {
+            let what = format!("{key} is empty");
+            self.refuse(key, span, what, "fill it in, or delete the line");
+            return None;
         }
+        if text.contains(char::is_control) {
+            let what = format!("{key} has a line break or a control character in it");
+            self.refuse(key, span, what, "write it on one line");
+            return None;
+        }
+        Some(text.to_owned())
+    }
+
+    fn table_of(
+        &mut self,
+        key: &str,
+        value: &DeValue,
+        span: Range<usize>,
+        folder: &Path,
+    ) -> Option<TableFile> {
+        let name = self.text_of(key, value, span.clone())?;
+        Some(TableFile {
+            path: folder.join(name),
+            place: Some(self.place(span, key)),
+        })
     }
 
     /// A period may be written as the bare number of a year.
@@ -220,6 +248,7 @@ impl Reader<'_> {
                         self.file
                     )));
                 }
+                self.currencies.add(amount.currency);
                 Some(amount.value)
             }
             Err(fault) => {

@@ -1,4 +1,4 @@
-//! The rows of the activities table: from cells to activities, or to faults.
+//! Rows of the activities table: cells to activities, part by part.
 
 use std::ops::Range;
 
@@ -6,38 +6,50 @@ use compact_str::CompactString;
 use csv::ByteRecord;
 
 use super::amount;
-use super::faults::Diagnostics;
+use super::digits::DecimalSign;
+use super::faults::{Diagnostics, FoundFaults, Spot};
 use super::header::{Columns, ExtraColumn, nearest};
 use super::names::{is_total, trimmed};
-use super::place::Place;
-use super::points::PointsTable;
+use super::notes::Readings;
+use super::points::PointsState;
 use super::table::Table;
 use crate::curves::{Curve, CurveError, Family, ParameterSet};
 use crate::model::{Activity, Field, ObservedRange};
 
+/// Kinds of faults that several tables share, and the mend of one.
+pub(super) const RAGGED_ROW: &str = "a ragged row";
+pub(super) const RAGGED_MEND: &str =
+    "give every row one cell a column; a cell with a separator in it needs quotes";
+pub(super) const NO_NUMBER: &str = "a cell that is no number";
+const POINTS_MISSING: &str = "a points curve without points";
+
 /// What one part of the table holds.
 pub(super) struct Part {
     pub activities: Vec<Activity>,
+    /// Where the record of each activity begins.
     pub starts: Vec<usize>,
     /// Names of the rows at fault, and where their records begin.
     pub refused: Vec<(CompactString, usize)>,
     pub extra: Vec<ExtraColumn>,
-    pub faults: Diagnostics,
-    /// Lenient readings in the order of the file: how a cell was written, and the cell.
-    pub readings: Vec<(&'static str, String)>,
+    pub faults: FoundFaults,
+    /// Faults of the points table behind this part's activities.
+    pub points_faults: Diagnostics,
+    pub readings: Readings,
     /// Points curves whose cap was left blank.
     pub capped_at_last_knot: usize,
+    /// Rows with nothing in them.
+    pub empty_rows: usize,
 }
 
 impl Part {
-    /// Reads the records of one part of the table's text.
+    /// Reads the rows of a part.
     ///
     /// # Errors
-    /// What makes the rest of the file unreadable; faults of single rows are collected.
+    /// A row that is no row of a table at all.
     pub(super) fn read(
         table: &Table,
         columns: &Columns,
-        points: Option<&PointsTable>,
+        points: PointsState,
         part: Range<usize>,
     ) -> Result<Self, Diagnostics> {
         let mut read = Self {
@@ -49,11 +61,13 @@ impl Part {
                 .iter()
                 .map(|&column| ExtraColumn::new(&table.header[column]))
                 .collect(),
-            faults: Diagnostics::default(),
-            readings: Vec::new(),
+            faults: FoundFaults::default(),
+            points_faults: Diagnostics::default(),
+            readings: Readings::default(),
             capped_at_last_knot: 0,
+            empty_rows: 0,
         };
-        table.records(part, |record, start, _| {
+        let empty_rows = table.records(part, |record, start, _| {
             read.add_row(
                 &Row {
                     table,
@@ -65,21 +79,23 @@ impl Part {
             );
             true
         })?;
+        read.empty_rows = empty_rows;
         Ok(read)
     }
 
-    fn add_row(&mut self, row: &Row, points: Option<&PointsTable>) {
+    fn fault_count(&self) -> usize {
+        self.faults.count() + self.points_faults.count()
+    }
+
+    fn add_row(&mut self, row: &Row, points: PointsState) {
         if row.record.len() != row.table.header.len() {
             let (found, needed) = (row.record.len(), row.table.header.len());
-            self.faults.add(
-                "a ragged row",
-                || row.table.row_place(row.start),
-                format!("this row has {found} cells, the header has {needed}"),
-                "give every row one cell a column; a cell with a separator in it needs quotes",
-            );
+            self.faults.add(RAGGED_ROW, row.spot(None), || {
+                (ragged(found, needed), RAGGED_MEND.to_owned())
+            });
             return;
         }
-        let before = self.faults.count();
+        let before = self.fault_count();
         let name = self.name_of(row);
         let Some(curve) = self.curve_of(row, &name, points) else {
             // The other cells are still looked at, so that all faults of a row are found at once.
@@ -110,7 +126,7 @@ impl Part {
             }
         }
         activity.observed = was_observed.then_some(observed);
-        if self.faults.count() > before {
+        if self.fault_count() > before {
             self.refused.push((activity.name, row.start));
             return;
         }
@@ -128,34 +144,74 @@ impl Part {
     fn name_of(&mut self, row: &Row) -> CompactString {
         let cell = String::from_utf8_lossy(&row.record[row.columns.activity]);
         let name = trimmed(&cell);
-        let place = || row.place(row.columns.activity);
+        let spot = row.spot(Some(row.columns.activity));
         if name.is_empty() {
-            let what = "this row has values and no name of an activity";
-            self.faults.add(
-                "a row without a name",
-                place,
-                what,
-                "name it, or delete the row",
-            );
+            self.faults.add("a row without a name", spot, || {
+                (
+                    "this row has values and no name of an activity".to_owned(),
+                    "name it, or delete the row".to_owned(),
+                )
+            });
         } else if is_total(name) {
-            self.faults.add(
-                "a row of sums",
-                place,
-                format!("\"{name}\" looks like a row that adds up the others"),
-                "delete the row; sums are computed (or rename it if it is an activity)",
-            );
+            self.faults.add("a row of sums", spot, || {
+                (
+                    format!("\"{name}\" looks like a row that adds up the others"),
+                    "delete the row; sums are computed (or rename it if it is an activity)"
+                        .to_owned(),
+                )
+            });
+        } else if name.bytes().any(|byte| byte < b' ') || name.contains(char::is_control) {
+            self.faults.add("a name of several lines", spot, || {
+                (
+                    "this name has a line break or a control character in it".to_owned(),
+                    "write the name on one line".to_owned(),
+                )
+            });
         }
         CompactString::from(name)
     }
 
-    fn curve_of(&mut self, row: &Row, name: &str, points: Option<&PointsTable>) -> Option<Curve> {
-        let cell = String::from_utf8_lossy(&row.record[row.columns.curve]);
-        let written = cell.trim();
-        let family: Option<Family> = written
-            .parse()
+    fn curve_of(&mut self, row: &Row, name: &str, points: PointsState) -> Option<Curve> {
+        let family = self.family_of(row, name);
+        let before = self.faults.count();
+        let mut given = ParameterSet::default();
+        for &(parameter, column) in &row.columns.parameters {
+            if let Some(value) = self.number_in(row, column) {
+                given = given.with(parameter, value);
+            }
+        }
+        let family = family?;
+        let fault = match Curve::from_parameters(family, &given) {
+            Ok(curve) => {
+                self.refuse_idle_points(row, name, family, points);
+                return Some(curve);
+            }
+            Err(CurveError::NoTable) => return self.tabulated(row, name, points),
+            Err(fault) => fault,
+        };
+        let unread = self.faults.count() > before;
+        self.explain(row, name, family, &given, &fault, unread);
+        None
+    }
+
+    /// The family of a row, in whichever letters.
+    fn family_of(&mut self, row: &Row, name: &str) -> Option<Family> {
+        let cell = &row.record[row.columns.curve];
+        let exact = std::str::from_utf8(cell)
             .ok()
-            .or_else(|| written.to_lowercase().parse().ok());
-        let Some(family) = family else {
+            .and_then(|cell| cell.parse().ok());
+        if exact.is_some() {
+            return exact;
+        }
+        let cell = String::from_utf8_lossy(cell);
+        let written = trimmed(&cell);
+        if let Ok(family) = written.to_lowercase().parse() {
+            self.readings
+                .count("a family in capital letters or with spaces", &cell);
+            return Some(family);
+        }
+        let spot = row.spot(Some(row.columns.curve));
+        self.faults.add("an unknown family", spot, || {
             let families = Family::ALL.map(Family::name);
             let mend = match nearest(written, families.iter().copied()) {
                 Some(meant) => format!("did you mean \"{meant}\"?"),
@@ -166,115 +222,64 @@ impl Part {
             } else {
                 format!("\"{written}\" is not a family of curves")
             };
-            self.faults.add(
-                "an unknown family",
-                || row.place(row.columns.curve),
-                what,
-                mend,
-            );
-            return None;
-        };
-        let mut given = ParameterSet::default();
-        let before = self.faults.count();
-        for &(parameter, column) in &row.columns.parameters {
-            if let Some(value) = self.number_in(row, column) {
-                given = given.with(parameter, value);
-            }
-        }
-        let unread = self.faults.count() > before;
-        let fault = match Curve::from_parameters(family, &given) {
-            Ok(curve) => {
-                self.refuse_idle_points(row, name, family, points);
-                return Some(curve);
-            }
-            Err(CurveError::NoTable) => return self.tabulated(row, name, points),
-            Err(fault) => fault,
-        };
-        // A cell that could not be read has been reported, and is not missing.
-        if unread && matches!(fault, CurveError::Missing { .. }) {
-            return None;
-        }
-        let needed: Vec<&str> = family
-            .parameters()
-            .iter()
-            .map(|parameter| parameter.name())
-            .collect();
-        let mend = match fault {
-            CurveError::Missing { parameter, .. } => format!("fill in the column {parameter}"),
-            CurveError::NotUsed { .. } if needed.is_empty() => {
-                "leave the cell blank; a points curve is read from the points table".to_owned()
-            }
-            CurveError::NotUsed { .. } => {
-                format!(
-                    "leave the cell blank; a {family} curve has {}",
-                    needed.join(" and ")
-                )
-            }
-            _ => "correct it".to_owned(),
-        };
-        let column = fault
-            .parameter()
-            .and_then(|parameter| row.table.column(parameter.name()));
-        let place = || match column {
-            Some(column) => row.place(column),
-            None => row.place(row.columns.curve),
-        };
-        self.faults.add(
-            "a parameter at fault",
-            place,
-            format!("{name}: {fault}"),
-            mend,
-        );
+            (what, mend)
+        });
         None
     }
 
-    fn tabulated(&mut self, row: &Row, name: &str, points: Option<&PointsTable>) -> Option<Curve> {
-        let place = || row.place(row.columns.curve);
-        let Some(points) = points else {
-            self.faults.add(
-                "a points curve without points",
-                place,
-                format!("\"{name}\" is a points curve, and there is no points table"),
-                "name it with --points FILE or points = \"…\" in the plan file",
-            );
-            return None;
+    fn tabulated(&mut self, row: &Row, name: &str, points: PointsState) -> Option<Curve> {
+        let spot = row.spot(Some(row.columns.curve));
+        let points = match points {
+            PointsState::Read(points) => points,
+            // What is at fault has been said.
+            PointsState::Unreadable => return None,
+            PointsState::None => {
+                self.faults.add(POINTS_MISSING, spot, || {
+                    (
+                        format!("\"{name}\" is a points curve, and there is no points table"),
+                        "name it with --points FILE or points = \"…\" in the plan file".to_owned(),
+                    )
+                });
+                return None;
+            }
         };
         match points.curve_of(name) {
             Some(Ok(curve)) => Some(Curve::Points(curve)),
+            // Rows that could not be read may have been of this activity.
+            Some(Err(_)) if points.is_faulty => None,
             Some(Err(fault)) => {
-                self.faults.append(fault);
+                self.points_faults.append(fault);
                 None
             }
+            None if points.is_faulty => None,
             None => {
-                self.faults.add(
-                    "a points curve without points",
-                    place,
-                    format!(
-                        "\"{name}\" is a points curve, and {} has no row for it",
-                        points.table.file
-                    ),
-                    "add its rows; names must agree to the letter",
-                );
+                self.faults.add(POINTS_MISSING, spot, || {
+                    (
+                        format!(
+                            "\"{name}\" is a points curve, and {} has no row for it",
+                            points.table.file
+                        ),
+                        "add its rows; names must agree to the letter".to_owned(),
+                    )
+                });
                 None
             }
         }
     }
 
     /// Rows of the points table for an activity of another family would be ignored.
-    fn refuse_idle_points(
-        &mut self,
-        row: &Row,
-        name: &str,
-        family: Family,
-        points: Option<&PointsTable>,
-    ) {
-        if points.is_some_and(|points| points.curves.contains_key(name)) {
-            self.faults.add(
-                "points that are not used",
-                || row.place(row.columns.curve),
-                format!("\"{name}\" is a {family} curve, and the points table has rows for it"),
-                "write points as its curve, or delete the rows",
-            );
+    fn refuse_idle_points(&mut self, row: &Row, name: &str, family: Family, points: PointsState) {
+        let PointsState::Read(points) = points else {
+            return;
+        };
+        if points.curves.contains_key(name) {
+            let spot = row.spot(Some(row.columns.curve));
+            self.faults.add("points that are not used", spot, || {
+                (
+                    format!("\"{name}\" is {family}, and the points table has rows for it"),
+                    "write points as its curve, or delete the rows".to_owned(),
+                )
+            });
         }
     }
 
@@ -285,7 +290,7 @@ impl Part {
         if cell.is_empty() {
             return None;
         }
-        if !row.table.dialect.decimal_comma
+        if row.table.dialect.decimal == DecimalSign::Point
             && let Ok(value) = fast_float2::parse::<f64, _>(cell)
             && value.is_finite()
         {
@@ -300,21 +305,15 @@ impl Part {
         if trimmed(&cell).is_empty() {
             return None;
         }
-        match amount::parse(&cell, row.table.dialect.decimal_comma) {
+        match amount::parse(&cell, row.table.dialect.decimal) {
             Ok(found) => {
-                if let Some(how) = found.written {
-                    self.readings.push((how, cell.trim().to_owned()));
-                }
+                self.readings.count_amount(&found, &cell);
                 Some(found.value)
             }
             Err(fault) => {
-                let place = || row.place(column);
-                self.faults.add(
-                    "a cell that is no number",
-                    place,
-                    fault.to_string(),
-                    fault.mend(),
-                );
+                let spot = row.spot(Some(column));
+                self.faults
+                    .add(NO_NUMBER, spot, || (fault.to_string(), fault.mend()));
                 None
             }
         }
@@ -322,16 +321,24 @@ impl Part {
 }
 
 /// One record and what its cells mean.
-struct Row<'a> {
-    table: &'a Table<'a>,
-    columns: &'a Columns,
+pub(super) struct Row<'a> {
+    pub table: &'a Table<'a>,
+    pub columns: &'a Columns,
     record: &'a ByteRecord,
     start: usize,
 }
 
 impl Row<'_> {
-    fn place(&self, column: usize) -> Place {
-        self.table
-            .place(self.start, column, Some(&self.table.header[column]))
+    pub(super) fn spot(&self, column: Option<usize>) -> Spot {
+        Spot {
+            start: self.start,
+            column,
+        }
     }
+}
+
+/// What a row with too few or too many cells is told.
+pub(super) fn ragged(found: usize, needed: usize) -> String {
+    let cells = if found == 1 { "cell" } else { "cells" };
+    format!("this row has {found} {cells}, the header has {needed}")
 }

@@ -10,22 +10,32 @@ use crate::numeric::figures::{TABLE_DIGITS, figure};
 /// slip of units: well below a thousand, and beyond any plan that makes sense.
 const SUSPICIOUS: f64 = 200.0;
 
-/// A warning if the limit is far off the sums of today's spends, of the caps, and of the spends over
-/// which the curves bend: all of those that are known, and all on the same side.
+/// A warning if the limit is far off today's spends, the caps, and the spends over which the curves
+/// bend, together: all of those that are known, and all on the same side. Today's spends and the
+/// bends are known where half of the activities have them, and taken for all in proportion.
 pub(super) fn warn_of_scale(activities: &[Activity], sense: Sense, limit: f64) -> Option<Note> {
-    // A spend that is not known makes the sum NaN, which is no sum.
-    let [current, caps, reach] = block_sums(activities.len(), |i| {
+    let counted = |value: Option<f64>| value.map_or([0.0, 0.0], |value| [value, 1.0]);
+    let [current, currents, reach, reaches, caps] = block_sums(activities.len(), |i| {
         let activity = &activities[i];
-        [
-            activity.current.unwrap_or(f64::NAN),
-            activity.cap,
-            reach_of_curve(&activity.curve).unwrap_or(f64::NAN),
-        ]
+        let [current, currents] = counted(activity.current);
+        let [reach, reaches] = counted(reach_of_curve(&activity.curve));
+        [current, currents, reach, reaches, activity.cap]
     });
+    let of_all = |sum: f64, known: f64| {
+        let all = activities.len() as f64;
+        if known * 2.0 >= all {
+            sum / known * all
+        } else {
+            f64::NAN
+        }
+    };
     let known = [
-        ("today's spends", current),
+        ("today's spends", of_all(current, currents)),
         ("the caps", caps),
-        ("the spends over which the curves bend", reach),
+        (
+            "the spends over which the curves bend",
+            of_all(reach, reaches),
+        ),
     ];
     let ratios: Vec<(&str, f64, f64)> = known
         .into_iter()
@@ -44,7 +54,7 @@ pub(super) fn warn_of_scale(activities: &[Activity], sense: Sense, limit: f64) -
     };
     let side = if far_above { "far above" } else { "far below" };
     Some(Note::warning(format!(
-        "the {name} of {} is {side} {what}, {} together: are both in the same unit?",
+        "the {name} of {} is {side} {what}, about {} together: are both in the same unit?",
         figure(limit, TABLE_DIGITS),
         figure(*sum, TABLE_DIGITS)
     )))

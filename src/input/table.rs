@@ -6,8 +6,9 @@ use std::ops::Range;
 use csv::{ByteRecord, ReaderBuilder};
 
 use super::dialect::Dialect;
+use super::digits::DecimalSign;
 use super::encoding::decode;
-use super::faults::Diagnostics;
+use super::faults::{Diagnostics, Spot};
 use super::notes::Note;
 use super::place::{Place, cell_of};
 
@@ -31,6 +32,8 @@ pub(super) struct Table<'a> {
     pub notes: Vec<Note>,
     /// Where the rows begin.
     body: usize,
+    /// Where the header begins.
+    head: usize,
 }
 
 impl<'a> Table<'a> {
@@ -50,18 +53,23 @@ impl<'a> Table<'a> {
                 format!("the first row names the columns; \"{key_column}\" is one of them"),
             ));
         }
-        let first_line = memchr::memchr(b'\n', text.as_bytes()).unwrap_or(text.len());
-        if first_line > LONGEST_LINE {
-            return Err(too_long(file, &text, 0));
+        check_lines(file, &text)?;
+        let head = after_separator_line(&text);
+        if head > 0 {
+            let said = format!(
+                "{file}: the line \"{}\" was passed over",
+                text[..head].trim()
+            );
+            notes.push(Note::reading(said));
         }
-        check_quotes(file, &text)?;
-        let dialect = Dialect::of(&text, key_column);
+        let dialect = Dialect::of(&text[head..], key_column);
+        check_quotes(file, &text, dialect.separator)?;
         if dialect.separator != b',' {
             let mut said = format!(
                 "{file}: cells are separated by {}",
                 dialect.separator_name()
             );
-            if dialect.decimal_comma {
+            if dialect.decimal == DecimalSign::Comma {
                 said.push_str(", and a comma is the decimal point");
             }
             notes.push(Note::reading(said));
@@ -73,6 +81,7 @@ impl<'a> Table<'a> {
             header: Vec::new(),
             notes,
             body: 0,
+            head,
         };
         table.read_header()?;
         Ok(table)
@@ -81,7 +90,7 @@ impl<'a> Table<'a> {
     /// Reads the first record as the names of the columns.
     fn read_header(&mut self) -> Result<(), Diagnostics> {
         let mut first = None;
-        let whole = 0..self.text.len();
+        let whole = self.head..self.text.len();
         self.records(whole, |record, start, end| {
             first = Some((record.clone(), start, end));
             false
@@ -134,7 +143,7 @@ impl<'a> Table<'a> {
             )));
         }
         self.header = header;
-        self.body = end;
+        (self.head, self.body) = (start, end);
         Ok(())
     }
 
@@ -158,23 +167,25 @@ impl<'a> Table<'a> {
     }
 
     /// Reads the records of a part in turn, each with the bytes where it begins and ends, until
-    /// `each` says false. Rows with nothing in them are passed over.
+    /// `each` says false. Rows with nothing in them are passed over, and their number is returned;
+    /// a line without any character is no row.
     pub(super) fn records(
         &self,
         part: Range<usize>,
         mut each: impl FnMut(&ByteRecord, usize, usize) -> bool,
-    ) -> Result<(), Diagnostics> {
+    ) -> Result<usize, Diagnostics> {
         let mut reader = ReaderBuilder::new()
             .has_headers(false)
             .flexible(true)
             .delimiter(self.dialect.separator)
             .from_reader(&self.text.as_bytes()[part.clone()]);
         let mut record = ByteRecord::new();
+        let mut empty_rows = 0;
         loop {
             let start = part.start + reader.position().byte() as usize;
             match reader.read_byte_record(&mut record) {
                 Ok(true) => {}
-                Ok(false) => return Ok(()),
+                Ok(false) => return Ok(empty_rows),
                 Err(fault) => {
                     return Err(Diagnostics::of(
                         "an unreadable row",
@@ -185,12 +196,11 @@ impl<'a> Table<'a> {
                 }
             }
             let end = part.start + reader.position().byte() as usize;
-            if end - start > LONGEST_LINE {
-                return Err(too_long(&self.file, &self.text, start));
-            }
             let blank = record.as_slice().iter().all(u8::is_ascii_whitespace);
-            if !blank && !each(&record, start, end) {
-                return Ok(());
+            if blank {
+                empty_rows += 1;
+            } else if !each(&record, start, end) {
+                return Ok(empty_rows);
             }
         }
     }
@@ -201,6 +211,17 @@ impl<'a> Table<'a> {
         Place::in_text(&self.file, &self.text, cell, name)
     }
 
+    /// The place of a fault that was found in a part.
+    pub(super) fn place_of(&self, spot: Spot) -> Place {
+        match spot.column {
+            Some(column) => {
+                let name = self.header.get(column).map(String::as_str);
+                self.place(spot.start, column, name)
+            }
+            None => self.row_place(spot.start),
+        }
+    }
+
     /// The place of a whole record.
     pub(super) fn row_place(&self, start: usize) -> Place {
         let first = cell_of(&self.text, start, 0, self.dialect.separator).start;
@@ -209,32 +230,65 @@ impl<'a> Table<'a> {
         Place::in_text(&self.file, &self.text, first..end, Some("this row"))
     }
 
+    /// The place of a column's name.
+    pub(super) fn header_place(&self, column: usize) -> Place {
+        self.place_of(Spot {
+            start: self.head,
+            column: Some(column),
+        })
+    }
+
+    /// The place of the whole header.
+    pub(super) fn header_row_place(&self) -> Place {
+        self.row_place(self.head)
+    }
+
     /// Which column a name stands for.
     pub(super) fn column(&self, name: &str) -> Option<usize> {
         self.header.iter().position(|known| known == name)
     }
 }
 
-fn too_long(file: &str, text: &str, start: usize) -> Diagnostics {
-    let megabytes = LONGEST_LINE >> 20;
-    Diagnostics::of(
-        "a line without end",
-        Place::in_text(file, text, start..start + 1, None),
-        format!("this line is longer than {megabytes} MB, so this is no table"),
-        "save the table as CSV, one row a line",
-    )
+/// Where the table begins behind a line such as `sep=;`, which some workbooks put before it. The
+/// header shows the separator by itself.
+fn after_separator_line(text: &str) -> usize {
+    let end = memchr::memchr2(b'\n', b'\r', text.as_bytes()).unwrap_or(text.len());
+    match text[..end].trim_matches('"').strip_prefix("sep=") {
+        Some(separator) if separator.chars().count() == 1 => end,
+        _ => 0,
+    }
+}
+
+/// Refuses a line that goes on and on, before a row of it is kept.
+fn check_lines(file: &str, text: &str) -> Result<(), Diagnostics> {
+    let bytes = text.as_bytes();
+    let mut line = 0;
+    while bytes.len() - line > LONGEST_LINE {
+        match memchr::memrchr2(b'\n', b'\r', &bytes[line..line + LONGEST_LINE]) {
+            Some(end) => line += end + 1,
+            None => {
+                let megabytes = LONGEST_LINE >> 20;
+                return Err(Diagnostics::of(
+                    "a line without end",
+                    Place::in_text(file, text, line..line + 1, None),
+                    format!("this line is longer than {megabytes} MB, so this is no table"),
+                    "save the table as CSV, one row a line",
+                ));
+            }
+        }
+    }
+    Ok(())
 }
 
 /// Refuses a quote that is never closed, and text behind a closed one: what a cell holds would
 /// be a guess.
-fn check_quotes(file: &str, text: &str) -> Result<(), Diagnostics> {
+fn check_quotes(file: &str, text: &str, separator: u8) -> Result<(), Diagnostics> {
     let bytes = text.as_bytes();
+    let ends_cell = |byte: u8| byte == separator || matches!(byte, b'\n' | b'\r');
     let mut at = 0;
     while let Some(found) = memchr::memchr(b'"', &bytes[at..]) {
         let open = at + found;
-        let begins_cell =
-            open == 0 || matches!(bytes[open - 1], b',' | b';' | b'\t' | b'\n' | b'\r');
-        if !begins_cell {
+        if open > 0 && !ends_cell(bytes[open - 1]) {
             at = open + 1;
             continue;
         }
@@ -256,8 +310,7 @@ fn check_quotes(file: &str, text: &str) -> Result<(), Diagnostics> {
                 }
             }
         }
-        let after = bytes.get(close + 1);
-        if !matches!(after, None | Some(b',' | b';' | b'\t' | b'\n' | b'\r')) {
+        if bytes.get(close + 1).is_some_and(|&after| !ends_cell(after)) {
             return Err(Diagnostics::of(
                 "text behind a quote",
                 Place::in_text(file, text, open..close + 2, None),
