@@ -1,6 +1,7 @@
 //! Names that must differ from one another, whatever their case and spaces.
 
 use std::borrow::Cow;
+use std::collections::{HashMap, HashSet};
 use std::hash::{BuildHasher, Hasher};
 
 use rayon::prelude::*;
@@ -85,19 +86,22 @@ pub(super) fn repeated<'n>(
     count: usize,
     name: impl Fn(usize) -> &'n str + Sync,
 ) -> Vec<(usize, usize)> {
-    let mut by_hash: Vec<(u64, u32)> = (0..count as u32)
+    let hashes: Vec<u64> = (0..count)
         .into_par_iter()
-        .map(|i| (hash_of(name(i as usize)), i))
+        .map(|i| hash_of(name(i)))
         .collect();
-    by_hash.par_sort_unstable();
+    let suspects = met_twice(&hashes);
+    let mut alike: HashMap<u64, Vec<usize>, FxBuildHasher> = HashMap::default();
+    for (i, hash) in hashes.iter().enumerate() {
+        if suspects.contains(hash) && !name(i).is_empty() {
+            alike.entry(*hash).or_default().push(i);
+        }
+    }
     let mut repeated = Vec::new();
-    for alike in by_hash
-        .chunk_by(|one, other| one.0 == other.0)
-        .filter(|alike| alike.len() > 1 && !name(alike[0].1 as usize).is_empty())
-    {
+    for alike in alike.into_values() {
         // Names that share a hash by chance are told apart here.
         let mut first: Vec<usize> = Vec::new();
-        for i in alike.iter().map(|&(_, i)| i as usize) {
+        for i in alike {
             match first
                 .iter()
                 .find(|&&earlier| folded(name(earlier)) == folded(name(i)))
@@ -109,6 +113,23 @@ pub(super) fn repeated<'n>(
     }
     repeated.sort_unstable_by_key(|&(_, again)| again);
     repeated
+}
+
+/// Every hash that stands twice, and a few that only share their place in a table of bits with
+/// another: a table that fits the cache tells most of them apart at one look each.
+fn met_twice(hashes: &[u64]) -> HashSet<u64, FxBuildHasher> {
+    // A word of bits for each name: about one name in a hundred is suspected by chance.
+    let mut met = vec![0_u64; hashes.len().next_power_of_two()];
+    let mut twice = HashSet::default();
+    for &hash in hashes {
+        let word = (hash >> 6) as usize & (met.len() - 1);
+        let bit = 1 << (hash & 63);
+        if met[word] & bit != 0 {
+            twice.insert(hash);
+        }
+        met[word] |= bit;
+    }
+    twice
 }
 
 #[cfg(test)]
