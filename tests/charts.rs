@@ -5,7 +5,9 @@ use isomargin::curves::{
     Curve, Exponential, ExponentialParams, Hill, HillParams, Hyperbolic, HyperbolicParams, Knot,
     Linear, LinearParams, Log, LogParams, Points, Power, PowerParams, Quadratic, QuadraticParams,
 };
-use isomargin::model::{Activity, Aim, Constraint, Labels, ObservedRange, Problem, Solution};
+use isomargin::model::{
+    Activity, Aim, Constraint, Labels, ObservedRange, Problem, Solution, UsePerUnit,
+};
 use isomargin::solver::solve;
 
 const NAMES: [&str; 12] = [
@@ -137,12 +139,46 @@ fn costs() -> Problem {
     .unwrap()
 }
 
+/// A budget that the caps leave unspent: its price is zero.
+fn slack() -> Problem {
+    let plan = returns(9, 2e6);
+    let activities = plan.activities().iter().enumerate().map(|(i, activity)| {
+        let cap = activity.cap.min(3e6 + 1e5 * i as f64);
+        Activity {
+            current: None,
+            cap,
+            ..activity.clone()
+        }
+    });
+    let budget = Constraint::budget(1e9);
+    Problem::new(Aim::Maximise, activities.collect(), vec![budget]).unwrap()
+}
+
+/// Activities whose unit of spend uses different amounts of what is limited.
+fn uses() -> Problem {
+    let plan = returns(6, 2e6);
+    let hours = Constraint {
+        use_per_unit: UsePerUnit::PerActivity(vec![1.0, 0.5, 2.0, 1.0, 1.5, 0.8]),
+        ..Constraint::budget(9e6)
+    };
+    Problem::new(Aim::Maximise, plan.activities().to_vec(), vec![hours]).unwrap()
+}
+
 fn labels() -> Labels {
     Labels {
         title: Some("Works programme".to_owned()),
         money: Some("EUR".to_owned()),
         return_unit: Some("homes protected".to_owned()),
         period: Some("2027".to_owned()),
+    }
+}
+
+fn long_labels() -> Labels {
+    Labels {
+        title: Some("Works programme of the whole valley ".repeat(9)),
+        money: Some("thousand coins of the old mint, at prices of the first year".to_owned()),
+        return_unit: Some("households within a quarter of an hour of a stop".to_owned()),
+        ..labels()
     }
 }
 
@@ -171,6 +207,10 @@ fn pictures_to_look_at() {
         .map(|count| (format!("returns-{count}"), returns(count, 2e6), labels()))
         .into();
     plans.push(("small".to_owned(), returns(5, 1e-9), Labels::default()));
+    plans.push(("large".to_owned(), returns(4, 3e11), labels()));
+    plans.push(("long".to_owned(), returns(7, 1e12), long_labels()));
+    plans.push(("slack".to_owned(), slack(), labels()));
+    plans.push(("uses".to_owned(), uses(), labels()));
     plans.push((
         "costs".to_owned(),
         costs(),
@@ -181,7 +221,10 @@ fn pictures_to_look_at() {
         },
     ));
     for (name, problem, labels) in plans {
-        for drawing in drawn(&problem, &labels) {
+        let begun = std::time::Instant::now();
+        let drawings = drawn(&problem, &labels);
+        println!("{name}: {:?}", begun.elapsed());
+        for drawing in drawings {
             let file = folder.join(format!("{name}-{}", drawing.stem));
             std::fs::write(file.with_extension("png"), &drawing.png).unwrap();
             std::fs::write(file.with_extension("svg"), &drawing.svg).unwrap();
@@ -218,9 +261,15 @@ fn attribute(tag: &str, name: &str) -> Option<f64> {
 }
 
 #[test]
-fn no_text_begins_outside_the_sheet() {
-    for count in [1, 3, 12, 60] {
-        for drawing in drawn(&returns(count, 2e6), &labels()) {
+fn no_text_leaves_the_sheet() {
+    let plans = [1, 3, 12, 60].map(|count| returns(count, 2e6));
+    let plans = plans
+        .into_iter()
+        .chain([1e-9, 1e12].map(|money| returns(7, money)));
+    for (problem, labels) in
+        plans.flat_map(|plan| [(plan.clone(), labels()), (plan, long_labels())])
+    {
+        for drawing in drawn(&problem, &labels) {
             let head = drawing.svg.split('>').next().unwrap();
             let sheet: Vec<f64> = head
                 .split("viewBox=\"")
@@ -230,15 +279,45 @@ fn no_text_begins_outside_the_sheet() {
                 .split(' ')
                 .map(|number| number.parse().unwrap())
                 .collect();
-            for tag in drawing.svg.split("<text").skip(1) {
-                let tag = tag.split('>').next().unwrap();
+            for element in drawing.svg.split("<text").skip(1) {
+                let (tag, rest) = element.split_once('>').unwrap();
+                let letters = rest.split('<').next().unwrap().trim().chars().count() as f64;
                 let (x, y) = (attribute(tag, "x").unwrap(), attribute(tag, "y").unwrap());
-                assert!(
-                    (0.0..=sheet[2]).contains(&x) && (0.0..=sheet[3]).contains(&y),
-                    "{tag}"
-                );
+                // A letter of a sans-serif face is about half as wide as the face is high.
+                let length = 0.5 * letters * attribute(tag, "font-size").unwrap();
+                let before = match tag {
+                    tag if tag.contains("\"end\"") => length,
+                    tag if tag.contains("\"middle\"") => length / 2.0,
+                    _ => 0.0,
+                };
+                let upright = tag.contains("rotate(270");
+                let (along, end) = if upright {
+                    (sheet[3] - y, sheet[3])
+                } else {
+                    (x, sheet[2])
+                };
+                assert!((0.0..=sheet[2]).contains(&x), "{tag}");
+                assert!((0.0..=sheet[3]).contains(&y), "{tag}");
+                assert!(before <= along, "{element}");
+                assert!(along - before + length <= end, "{element}");
             }
         }
+    }
+}
+
+#[test]
+fn where_uses_differ_every_panel_states_its_own_price() {
+    let problem = uses();
+    let solution = solve(&problem).unwrap();
+    let drawing = drawn_with(&problem, &labels(), &solution).remove(0);
+    for i in 0..problem.activities().len() {
+        // The first-order condition of the optimum: w r' = λ a, here per million.
+        let use_per_unit = problem.constraints()[0].use_per_unit(i);
+        let price = 1e6 * solution.shadow_prices[0] * use_per_unit;
+        assert!(
+            drawing.svg.contains(&format!("price {price:.2}")),
+            "{price}"
+        );
     }
 }
 
@@ -273,6 +352,7 @@ fn hostile_names_do_no_harm() {
         },
     ) {
         assert!(!drawing.svg.contains("<script") && !drawing.svg.contains("<b>"));
+        assert!(drawing.svg.contains("<title>&lt;b&gt;&amp;"));
         assert!(!drawing.svg.contains(['\u{0}', '\u{202e}']));
     }
 }
@@ -305,6 +385,24 @@ fn extremes_are_drawn_without_end_or_panic() {
     )
     .unwrap();
     drawn(&vertical, &labels());
+    let huge = Activity {
+        cap: 1e308,
+        current: Some(1e307),
+        ..line(1e-308)
+    };
+    let huge = Problem::new(
+        Aim::Maximise,
+        vec![huge, line(1e300)],
+        vec![Constraint::budget(1e308)],
+    )
+    .unwrap();
+    for price in [f64::INFINITY, f64::NEG_INFINITY, 1e300, -1e-300] {
+        let odd = Solution {
+            spends: vec![1e308, 0.0],
+            shadow_prices: vec![price],
+        };
+        drawn_with(&huge, &labels(), &odd);
+    }
     // A plan that no solver made: the pictures must still end.
     let odd = Solution {
         spends: vec![f64::INFINITY, f64::NAN],

@@ -5,6 +5,10 @@ use crate::numeric::figures::figure;
 /// Ticks that an axis has at about the most.
 const MOST_TICKS: usize = 6;
 
+/// Ends from here on are replaced: far enough from the greatest `f64` that lengths and ticks stay
+/// finite.
+const FARTHEST: f64 = 1e300;
+
 /// A straight axis from a value to a greater one, laid over pixels.
 #[derive(Debug, Clone, Copy)]
 pub(super) struct Axis {
@@ -19,9 +23,10 @@ impl Axis {
     /// are not finite or leave no room between them are replaced, so that something can always
     /// be drawn.
     pub(super) fn new((from, to): (f64, f64), (start, end): (f64, f64)) -> Self {
-        let from = if from.is_finite() { from } else { 0.0 };
+        let [from, to] = [from, to].map(|end| end.clamp(-FARTHEST, FARTHEST));
+        let from = if from.abs() < FARTHEST { from } else { 0.0 };
         let room = f64::EPSILON * from.abs() * 16.0;
-        let to = if to.is_finite() && to - from > room {
+        let to = if to < FARTHEST && to - from > room {
             to
         } else {
             from + from.abs().max(1.0)
@@ -55,7 +60,7 @@ impl Axis {
         self.to
     }
 
-    /// Round values on the axis, at most about `most`, one, two or five times a power of ten
+    /// Round values on the axis, at most about `most`, 1, 2, 2.5 or 5 times a power of ten
     /// apart.
     pub(super) fn ticks(&self, most: usize) -> Vec<f64> {
         let step = round_step((self.to - self.from) / most.clamp(1, MOST_TICKS) as f64);
@@ -67,10 +72,10 @@ impl Axis {
     }
 }
 
-/// The least of 1, 2, 5 times a power of ten that is not below `step`.
+/// The least of 1, 2, 2.5, 5 times a power of ten that is not below `step`.
 fn round_step(step: f64) -> f64 {
     let power = 10_f64.powi(step.log10().floor().clamp(-300.0, 300.0) as i32);
-    [1.0, 2.0, 5.0, 10.0]
+    [1.0, 2.0, 2.5, 5.0, 10.0]
         .into_iter()
         .map(|factor| factor * power)
         .find(|round| *round >= step * (1.0 - 1e-9))

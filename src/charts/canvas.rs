@@ -1,31 +1,17 @@
-//! A sheet that one drawing function fills twice: fine pixels scaled down for PNG, fine units
-//! with a view box for SVG.
-//!
-//! The drawing library rounds every point to a whole pixel, in SVG too. Drawn several times as
-//! large, the rounding is too small to see.
+//! A sheet in pixels, several times as fine underneath: lines, marks and letters.
 
-use std::sync::Once;
-
-use plotters::backend::{BitMapBackend, DrawingBackend, SVGBackend};
+use plotters::backend::DrawingBackend;
 use plotters::coord::Shift;
-use plotters::drawing::{DrawingArea, IntoDrawingArea};
-use plotters::element::{Circle, PathElement, Polygon, Text};
+use plotters::drawing::DrawingArea;
+use plotters::element::{Circle, PathElement, Polygon, Rectangle, Text};
 use plotters::style::text_anchor::{HPos, Pos, VPos};
-use plotters::style::{
-    Color, FontStyle, IntoFont, RGBColor, ShapeStyle, TextStyle, WHITE, register_font,
-};
+use plotters::style::{Color, FontStyle, IntoFont, RGBColor, ShapeStyle, TextStyle, WHITE};
 
 use super::ChartError;
 
-/// Pixels of the drawing for one of the PNG, in each direction.
-const PNG_FINENESS: i32 = 3;
-
-/// Units of the SVG's view box for one pixel.
-const SVG_FINENESS: i32 = 10;
-
 /// The name under which the embedded font is registered. A viewer of the SVG takes its own font
 /// of that kind; the embedded one is among the widest, so that no text outgrows its place.
-const FONT: &str = "sans-serif";
+pub(super) const FONT: &str = "sans-serif";
 
 /// Where a text stands against its point.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -40,14 +26,16 @@ pub(super) enum Align {
 pub(super) struct Type {
     /// Height in pixels.
     pub size: f64,
+    pub bold: bool,
     pub colour: RGBColor,
 }
 
 /// A mark at a point.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub(super) enum Mark {
+    /// Filled: what is planned.
     Disc,
-    Ring,
+    /// Hollow, with room for a disc inside: today.
     Diamond,
 }
 
@@ -66,8 +54,14 @@ pub(super) struct Canvas<DB: DrawingBackend> {
 }
 
 impl<DB: DrawingBackend> Canvas<DB> {
-    fn new(area: DrawingArea<DB, Shift>, fineness: i32) -> Self {
+    /// A canvas on an area that is `fineness` times as wide and high as the picture.
+    pub(super) fn new(area: DrawingArea<DB, Shift>, fineness: i32) -> Self {
         Self { area, fineness }
+    }
+
+    /// Writes what is drawn to where it goes.
+    pub(super) fn finish(&self) -> Result<(), ChartError> {
+        self.area.present().map_err(ChartError::of)
     }
 
     fn point(&self, (x, y): (f64, f64)) -> (i32, i32) {
@@ -140,6 +134,19 @@ impl<DB: DrawingBackend> Canvas<DB> {
         }
     }
 
+    /// A filled rectangle between two corners.
+    pub(super) fn band(
+        &self,
+        corner: (f64, f64),
+        opposite: (f64, f64),
+        colour: RGBColor,
+    ) -> Result<(), ChartError> {
+        let corners = [self.point(corner), self.point(opposite)];
+        self.area
+            .draw(&Rectangle::new(corners, colour.filled()))
+            .map_err(ChartError::of)
+    }
+
     /// A mark of this radius; its inside is white where it is no disc.
     pub(super) fn mark(
         &self,
@@ -149,17 +156,14 @@ impl<DB: DrawingBackend> Canvas<DB> {
         colour: RGBColor,
     ) -> Result<(), ChartError> {
         let (x, y) = at;
+        if !(x.is_finite() && y.is_finite()) {
+            return Ok(());
+        }
         let fine_radius = (radius * f64::from(self.fineness)).round() as i32;
-        let circle = |radius: i32, style: ShapeStyle| {
-            self.area
-                .draw(&Circle::new(self.point(at), radius, style))
-                .map_err(ChartError::of)
-        };
         match mark {
-            Mark::Disc => circle(fine_radius, colour.filled()),
-            Mark::Ring => {
-                circle(fine_radius, colour.filled())?;
-                circle(fine_radius * 3 / 5, WHITE.filled())
+            Mark::Disc => {
+                let disc = Circle::new(self.point(at), fine_radius, colour.filled());
+                self.area.draw(&disc).map_err(ChartError::of)
             }
             Mark::Diamond => {
                 let diamond = |radius: f64| {
@@ -174,7 +178,7 @@ impl<DB: DrawingBackend> Canvas<DB> {
                 };
                 let outer = Polygon::new(diamond(1.25 * radius), colour.filled());
                 self.area.draw(&outer).map_err(ChartError::of)?;
-                let inner = Polygon::new(diamond(0.65 * radius), WHITE.filled());
+                let inner = Polygon::new(diamond(1.25 * radius - 3.0), WHITE.filled());
                 self.area.draw(&inner).map_err(ChartError::of)
             }
         }
@@ -218,7 +222,12 @@ impl<DB: DrawingBackend> Canvas<DB> {
     }
 
     fn style(&self, written: Type) -> TextStyle<'static> {
-        (FONT, written.size * f64::from(self.fineness))
+        let style = if written.bold {
+            FontStyle::Bold
+        } else {
+            FontStyle::Normal
+        };
+        (FONT, written.size * f64::from(self.fineness), style)
             .into_font()
             .color(&written.colour)
     }
@@ -257,89 +266,13 @@ impl<DB: DrawingBackend> Canvas<DB> {
     }
 }
 
-/// The text without control characters and marks that turn the direction of writing.
-fn printable(text: &str) -> String {
+/// The text without control characters, what XML forbids, and marks that turn the direction of
+/// writing.
+pub(super) fn printable(text: &str) -> String {
     text.chars()
         .filter(|character| {
             !character.is_control()
-                && !matches!(character, '\u{200b}'..='\u{200f}' | '\u{202a}'..='\u{202e}' | '\u{2066}'..='\u{2069}' | '\u{feff}')
+                && !matches!(character, '\u{200b}'..='\u{200f}' | '\u{202a}'..='\u{202e}' | '\u{2066}'..='\u{2069}' | '\u{61c}' | '\u{feff}' | '\u{fffe}' | '\u{ffff}')
         })
         .collect()
-}
-
-/// Draws a picture on both canvases.
-pub(super) fn render(picture: &impl Picture) -> Result<(Vec<u8>, String), ChartError> {
-    register_fonts()?;
-    Ok((render_png(picture)?, render_svg(picture)?))
-}
-
-fn register_fonts() -> Result<(), ChartError> {
-    static REGISTERED: Once = Once::new();
-    let mut outcome = Ok(());
-    REGISTERED.call_once(|| {
-        outcome = register_font(FONT, FontStyle::Normal, dejavu::sans::regular())
-            .map_err(|_| ChartError("the embedded font cannot be read".to_owned()));
-    });
-    outcome
-}
-
-fn render_svg(picture: &impl Picture) -> Result<String, ChartError> {
-    let (width, height) = picture.size();
-    let fine = SVG_FINENESS.unsigned_abs();
-    let mut svg = String::new();
-    {
-        let area =
-            SVGBackend::with_string(&mut svg, (fine * width, fine * height)).into_drawing_area();
-        area.fill(&WHITE).map_err(ChartError::of)?;
-        let canvas = Canvas::new(area, SVG_FINENESS);
-        picture.draw(&canvas)?;
-        canvas.area.present().map_err(ChartError::of)?;
-    }
-    // The view box stays fine; the page shows it at its size in pixels.
-    let drawn = format!("width=\"{}\" height=\"{}\"", fine * width, fine * height);
-    let shown = format!("width=\"{width}\" height=\"{height}\" role=\"img\"");
-    Ok(svg.replacen(&drawn, &shown, 1))
-}
-
-fn render_png(picture: &impl Picture) -> Result<Vec<u8>, ChartError> {
-    let (width, height) = picture.size();
-    let fine = PNG_FINENESS.unsigned_abs();
-    let mut pixels = vec![255; (3 * fine * width * fine * height) as usize];
-    {
-        let area = BitMapBackend::with_buffer(&mut pixels, (fine * width, fine * height))
-            .into_drawing_area();
-        let canvas = Canvas::new(area, PNG_FINENESS);
-        picture.draw(&canvas)?;
-        canvas.area.present().map_err(ChartError::of)?;
-    }
-    let scaled = scaled_down(&pixels, width as usize, height as usize, fine as usize);
-    let mut file = Vec::new();
-    let mut encoder = png::Encoder::new(&mut file, width, height);
-    encoder.set_color(png::ColorType::Rgb);
-    encoder.set_depth(png::BitDepth::Eight);
-    let mut writer = encoder.write_header().map_err(ChartError::of)?;
-    writer.write_image_data(&scaled).map_err(ChartError::of)?;
-    writer.finish().map_err(ChartError::of)?;
-    Ok(file)
-}
-
-/// The mean of every `fine` × `fine` block of RGB pixels.
-fn scaled_down(pixels: &[u8], width: usize, height: usize, fine: usize) -> Vec<u8> {
-    let share = (fine * fine) as u32;
-    let mut scaled = Vec::with_capacity(3 * width * height);
-    let mut sums = vec![0_u32; 3 * width];
-    for rows in pixels.chunks_exact(3 * fine * width * fine) {
-        sums.fill(0);
-        for row in rows.chunks_exact(3 * fine * width) {
-            for (sums, block) in sums.chunks_exact_mut(3).zip(row.chunks_exact(3 * fine)) {
-                for pixel in block.chunks_exact(3) {
-                    for (sum, &value) in sums.iter_mut().zip(pixel) {
-                        *sum += u32::from(value);
-                    }
-                }
-            }
-        }
-        scaled.extend(sums.iter().map(|sum| ((sum + share / 2) / share) as u8));
-    }
-    scaled
 }

@@ -6,43 +6,37 @@
 use plotters::backend::DrawingBackend;
 
 use super::axis::{Axis, Magnitude};
-use super::canvas::{Align, Canvas, Mark, Picture, render};
+use super::canvas::{Align, Canvas, Mark, Picture};
+use super::heights::{greater, range_of, rate_magnitude};
 use super::palette::{BLUE, GREEN, GREY, PALE, VERMILLION};
 use super::panel::Panel;
-use super::wording::{HEADING, SMALL, SUBHEADING, by_planned_spend, heading, money, rate_unit};
+use super::rendering::render;
+use super::wording::{
+    HEADING, SMALL, SMALL_BOLD, SUBHEADING, by_planned_spend, heading, money, rate_unit,
+};
 use super::{ChartError, Drawing, PlanView};
 use crate::model::Aim;
 use crate::numeric::figures::{TABLE_DIGITS, figure};
 
 const WIDTH: f64 = 1600.0;
 const TOP: f64 = 150.0;
-const LEFT: f64 = 120.0;
-const RIGHT: f64 = 40.0;
+/// Margin at both sides.
+const MARGIN: f64 = 40.0;
 const BOTTOM: f64 = 60.0;
-/// Height of a panel with its name and its numbers, and of the curves in it.
-const PANEL: f64 = 290.0;
+/// Heights in a panel beside the curves: its name and amount, and its numbers.
 const PANEL_HEAD: f64 = 58.0;
 const PANEL_FOOT: f64 = 40.0;
 /// Between two panels side by side.
 const GAP: f64 = 34.0;
 
 /// Panels that are drawn at the most.
-const MOST_PANELS: usize = 24;
-
-/// How many times the price the upright axis reaches at the most: marginal returns of first
-/// units may be without bound, and what matters is near the price.
-const REACH: f64 = 3.2;
-
-/// Share of the axis that returns of the other sign may take.
-const OTHER_SIDE: f64 = 0.25;
-
-/// Share of the highest marginal return above which the lowest counts as far from zero.
-const FAR_FROM_ZERO: f64 = 0.4;
+const MOST_PANELS: usize = 20;
 
 struct MarginalPicture {
     title: String,
     subtitle: String,
-    price: f64,
+    /// The price, where it is the same in every panel.
+    shared_price: Option<f64>,
     price_label: String,
     minimised: bool,
     rate: Magnitude,
@@ -59,10 +53,14 @@ struct MarginalPicture {
 /// # Errors
 /// [`ChartError`], whatever the plan, only where the drawing library fails.
 pub fn draw_marginal_curves(view: &PlanView) -> Result<Drawing, ChartError> {
-    let price = view.solution.shadow_prices.first().copied().unwrap_or(0.0);
     let order = by_planned_spend(view);
     let shown = &order[..order.len().min(MOST_PANELS)];
-    let panels: Vec<Panel> = shown.iter().map(|&i| Panel::of(view, i)).collect();
+    let mut panels: Vec<Panel> = shown.iter().map(|&i| Panel::of(view, i)).collect();
+    let price = panels.iter().map(|panel| panel.price).fold(0.0, greater);
+    let shared_price = panels
+        .iter()
+        .all(|panel| panel.price == price)
+        .then_some(price);
     let range = range_of(&panels, price);
     let largest = panels.iter().map(|panel| panel.reach).fold(0.0, f64::max);
     let spend = Magnitude::of(largest);
@@ -78,14 +76,24 @@ pub fn draw_marginal_curves(view: &PlanView) -> Result<Drawing, ChartError> {
     } else {
         "marginal return"
     };
-    let picture = MarginalPicture {
-        title: heading(view.labels, &format!("{what} of every activity")),
-        subtitle: subtitle(order.len(), panels.len()),
-        price,
-        price_label: format!(
+    let price_label = match shared_price {
+        Some(price) => format!(
             "shadow price {} {unit}",
             figure(price * rate.unit, TABLE_DIGITS)
         ),
+        None => {
+            for panel in &mut panels {
+                let price = figure(panel.price * rate.unit, TABLE_DIGITS);
+                panel.standing.push_str(&format!(", price {price}"));
+            }
+            "shadow price of what a unit of spend uses".to_owned()
+        }
+    };
+    let picture = MarginalPicture {
+        title: heading(view.labels, &format!("{what} of every activity")),
+        subtitle: subtitle(order.len(), panels.len()),
+        shared_price,
+        price_label,
         minimised,
         rate,
         rate_unit: unit,
@@ -98,7 +106,7 @@ pub fn draw_marginal_curves(view: &PlanView) -> Result<Drawing, ChartError> {
         panels,
     };
     let alt = picture.alt();
-    let (png, svg) = render(&picture)?;
+    let (png, svg) = render(&picture, &picture.title, &alt)?;
     Ok(Drawing {
         stem: "marginal-curves",
         title: picture.title,
@@ -118,58 +126,6 @@ fn subtitle(count: usize, shown: usize) -> String {
     }
 }
 
-/// The upright axis: from zero to where the curves go, but not far beyond the price.
-fn range_of(panels: &[Panel], price: f64) -> (f64, f64) {
-    let finite = |value: &f64| value.is_finite();
-    let heights = || {
-        let curves = panels
-            .iter()
-            .flat_map(|panel| panel.curve.iter().map(|&(_, height)| height));
-        curves
-            .chain(panels.iter().map(|panel| panel.planned.1))
-            .filter(finite)
-    };
-    let steepest = heights().fold(0.0, |most: f64, height| most.max(height.abs()));
-    let reach = if price != 0.0 && price.is_finite() {
-        steepest.min(REACH * price.abs()).max(1.2 * price.abs())
-    } else {
-        steepest
-    };
-    let lowest = heights().fold(0.0, f64::min).max(-reach);
-    let highest = heights().fold(0.0, f64::max).min(reach);
-    let (lowest, highest) = (
-        lowest.min(1.2 * price.min(0.0)),
-        highest.max(1.2 * price.max(0.0)),
-    );
-    let least = heights().fold(f64::INFINITY, f64::min);
-    if least > FAR_FROM_ZERO * highest {
-        // A zero on the axis would flatten curves that all lie far from it.
-        let margin = 0.15 * (highest - least);
-        (least - margin, highest + margin)
-    } else if highest >= -lowest {
-        (lowest.max(-OTHER_SIDE * highest), 1.04 * highest)
-    } else {
-        (1.04 * lowest, highest.min(-OTHER_SIDE * lowest))
-    }
-}
-
-/// The power of a thousand of money for which the rate is at least a tenth.
-fn rate_magnitude(rate: f64) -> Magnitude {
-    [
-        (1.0, ""),
-        (1e3, "thousand"),
-        (1e6, "million"),
-        (1e9, "billion"),
-    ]
-    .into_iter()
-    .map(|(unit, name)| Magnitude { unit, name })
-    .find(|per| rate.abs() * per.unit >= 0.1)
-    .unwrap_or(Magnitude {
-        unit: 1.0,
-        name: "",
-    })
-}
-
 impl MarginalPicture {
     fn alt(&self) -> String {
         let line = if self.minimised {
@@ -182,7 +138,7 @@ impl MarginalPicture {
             self.title, self.subtitle, self.rate_unit, self.price_label
         );
         for panel in self.panels.iter().take(5) {
-            let height = figure(panel.planned.1 * self.rate.unit, TABLE_DIGITS);
+            let height = self.height_written(panel.planned.1);
             alt.push_str(&format!(
                 " {}: {}, where it is {height}.",
                 panel.name, panel.standing
@@ -195,11 +151,41 @@ impl MarginalPicture {
         match self.panels.len() {
             0 | 1 => 1,
             2 | 4 => 2,
-            3 | 5 | 6 => 3,
-            7..=12 => 4,
-            13..=20 => 5,
-            _ => 6,
+            3 | 5 | 6 | 9 => 3,
+            7..=12 | 16 => 4,
+            _ => 5,
         }
+    }
+
+    /// Height of a panel; few panels have room to be tall.
+    fn panel_height(&self) -> f64 {
+        match self.rows() {
+            0 | 1 => 460.0,
+            2 => 380.0,
+            _ => 280.0,
+        }
+    }
+
+    /// Where the panels begin: right of the widest number on the upright axis.
+    fn left<DB: DrawingBackend>(&self, canvas: &Canvas<DB>) -> f64 {
+        let up = Axis::new(self.range, (1.0, 0.0));
+        let ticks = up.ticks(6).into_iter().map(|tick| (tick, SMALL));
+        let price = self.shared_price.map(|price| (price, SMALL_BOLD));
+        let widest = ticks
+            .chain(price)
+            .map(|(value, written)| canvas.width_of(&self.height_written(value), written))
+            .fold(0.0, f64::max);
+        MARGIN + 24.0 + widest + 10.0
+    }
+
+    /// Where the panels end.
+    fn bottom(&self) -> f64 {
+        TOP + self.panel_height() * self.rows() as f64
+    }
+
+    /// A number on the upright axis.
+    fn height_written(&self, height: f64) -> String {
+        figure(height * self.rate.unit, TABLE_DIGITS)
     }
 
     fn rows(&self) -> usize {
@@ -209,7 +195,7 @@ impl MarginalPicture {
     /// What the lines and marks mean, above the panels.
     fn draw_key<DB: DrawingBackend>(&self, canvas: &Canvas<DB>) -> Result<(), ChartError> {
         let y = 112.0;
-        let mut x = LEFT;
+        let mut x = MARGIN;
         let mut next = |label: &str, mark: &dyn Fn(f64) -> Result<(), ChartError>| {
             mark(x)?;
             canvas.text(label, (x + 46.0, y), Align::Left, SMALL)?;
@@ -231,11 +217,11 @@ impl MarginalPicture {
             canvas.dashes(&[(x, y), (x + 36.0, y)], GREEN, 2.5, (14.0, 5.0))
         })?;
         next("planned", &|x| {
-            canvas.mark(Mark::Disc, (x + 24.0, y), 7.0, BLUE)
+            canvas.mark(Mark::Disc, (x + 28.0, y), 5.5, BLUE)
         })?;
         if self.panels.iter().any(|panel| panel.today.is_some()) {
             next("today", &|x| {
-                canvas.mark(Mark::Diamond, (x + 24.0, y), 7.0, VERMILLION)
+                canvas.mark(Mark::Diamond, (x + 26.0, y), 9.0, VERMILLION)
             })?;
         }
         Ok(())
@@ -249,70 +235,76 @@ impl MarginalPicture {
         width: f64,
         first: bool,
     ) -> Result<(), ChartError> {
-        let (above, below) = (top + PANEL_HEAD, top + PANEL - PANEL_FOOT);
+        let (above, below) = (top + PANEL_HEAD, top + self.panel_height() - PANEL_FOOT);
         let across = Axis::new((0.0, panel.reach), (left, left + width));
         let up = Axis::new(self.range, (below, above));
+        panel.draw_bounds(canvas, &across, &up)?;
+        let price_at = self
+            .shared_price
+            .filter(|price| up.holds(*price))
+            .map(|price| (up.at(price), self.height_written(price)));
         for tick in up.ticks(6) {
             let y = up.at(tick);
             canvas.line(&[(left, y), (left + width, y)], PALE, 1.0)?;
-            if first {
-                let label = figure(tick * self.rate.unit, TABLE_DIGITS);
+            let free = price_at
+                .as_ref()
+                .is_none_or(|(at, _)| (at - y).abs() > 15.0);
+            if first && free {
+                let label = self.height_written(tick);
                 canvas.text(&label, (left - 10.0, y), Align::Right, SMALL)?;
             }
+        }
+        if let (true, Some((y, label))) = (first, price_at) {
+            canvas.text(&label, (left - 10.0, y), Align::Right, SMALL_BOLD)?;
         }
         let foot = if up.holds(0.0) { up.at(0.0) } else { below };
         canvas.line(&[(left, foot), (left + width, foot)], GREY, 1.0)?;
         canvas.line(&[(left, below), (left, above)], GREY, 1.0)?;
-        let most_ticks = ((width / 70.0) as usize).max(1);
-        for tick in across.ticks(most_ticks) {
+        let mut written_to = f64::NEG_INFINITY;
+        for tick in across.ticks(((width / 55.0) as usize).max(1)) {
             let x = across.at(tick);
             canvas.line(&[(x, below), (x, below + 5.0)], GREY, 1.0)?;
-            canvas.text(
-                &self.spend.written(tick),
-                (x, below + 18.0),
-                Align::Centre,
-                SMALL,
-            )?;
+            let label = self.spend.written(tick);
+            let half = canvas.width_of(&label, SMALL) / 2.0;
+            if x - half > written_to + 8.0 && x + half < left + width + GAP / 2.0 {
+                canvas.text(&label, (x, below + 18.0), Align::Centre, SMALL)?;
+                written_to = x + half;
+            }
         }
-        if up.holds(self.price) {
-            let y = up.at(self.price);
-            canvas.dashes(&[(left, y), (left + width, y)], GREEN, 2.0, (14.0, 5.0))?;
-        }
-        panel.draw(canvas, &across, &up)
+        panel.draw(canvas, (&across, &up), &|height| {
+            self.height_written(height)
+        })
     }
 }
 
 impl Picture for MarginalPicture {
     fn size(&self) -> (u32, u32) {
-        (
-            WIDTH as u32,
-            (TOP + PANEL * self.rows() as f64 + BOTTOM) as u32,
-        )
+        (WIDTH as u32, (self.bottom() + BOTTOM) as u32)
     }
 
     fn draw<DB: DrawingBackend>(&self, canvas: &Canvas<DB>) -> Result<(), ChartError> {
-        let title = canvas.fitted(&self.title, WIDTH - 80.0, HEADING);
-        canvas.text(&title, (40.0, 40.0), Align::Left, HEADING)?;
-        canvas.text(&self.subtitle, (40.0, 76.0), Align::Left, SUBHEADING)?;
+        let title = canvas.fitted(&self.title, WIDTH - 2.0 * MARGIN, HEADING);
+        canvas.text(&title, (MARGIN, 40.0), Align::Left, HEADING)?;
+        canvas.text(&self.subtitle, (MARGIN, 76.0), Align::Left, SUBHEADING)?;
         self.draw_key(canvas)?;
         let columns = self.columns();
-        let room = WIDTH - LEFT - RIGHT;
+        let left = self.left(canvas);
+        let room = WIDTH - left - MARGIN;
         let width = (room - GAP * (columns - 1) as f64) / columns as f64;
         for (i, panel) in self.panels.iter().enumerate() {
             let (row, column) = (i / columns, i % columns);
             let corner = (
-                LEFT + column as f64 * (width + GAP),
-                TOP + row as f64 * PANEL,
+                left + column as f64 * (width + GAP),
+                TOP + row as f64 * self.panel_height(),
             );
             self.draw_panel(canvas, panel, corner, width, column == 0)?;
         }
-        let middle = f64::midpoint(TOP, TOP + PANEL * self.rows() as f64);
-        let upright = canvas.fitted(&self.rate_unit, PANEL * self.rows() as f64, SMALL);
-        canvas.upright_text(&upright, (34.0, middle), SMALL)?;
-        let bottom = TOP + PANEL * self.rows() as f64 + 14.0;
+        let middle = f64::midpoint(TOP, self.bottom());
+        let upright = canvas.fitted(&self.rate_unit, self.bottom() - TOP, SMALL);
+        canvas.upright_text(&upright, (MARGIN + 6.0, middle), SMALL)?;
         canvas.text(
             &self.spend_unit,
-            (LEFT + room / 2.0, bottom),
+            (left + room / 2.0, self.bottom() + 14.0),
             Align::Centre,
             SMALL,
         )

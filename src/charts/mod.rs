@@ -7,9 +7,11 @@
 mod axis;
 mod canvas;
 mod error;
+mod heights;
 mod marginal_curves;
 mod palette;
 mod panel;
+mod rendering;
 mod spend;
 mod wording;
 

@@ -15,5 +15,7 @@ pub(super) const INK: RGBColor = RGBColor(33, 33, 33);
 pub(super) const GREY_INK: RGBColor = RGBColor(100, 100, 100);
 /// Axes and bounds.
 pub(super) const GREY: RGBColor = RGBColor(150, 150, 150);
-/// Grid lines and bands.
+/// What the bounds shut out.
+pub(super) const SHADE: RGBColor = RGBColor(244, 244, 244);
+/// Grid lines.
 pub(super) const PALE: RGBColor = RGBColor(232, 232, 232);

@@ -4,12 +4,12 @@ use plotters::backend::DrawingBackend;
 
 use super::axis::Axis;
 use super::canvas::{Align, Canvas, Mark};
-use super::palette::{BLUE, GREY, VERMILLION};
-use super::wording::{PLAIN, SMALL, money};
+use super::palette::{BLUE, GREEN, GREY, SHADE, VERMILLION};
+use super::wording::{NAME, SMALL, money, price_of_spend};
 use super::{ChartError, PlanView};
 use crate::curves::{Curve, ReturnCurve};
 use crate::model::{ObservedRange, Position};
-use crate::numeric::figures::figure;
+use crate::numeric::figures::{TABLE_DIGITS, figure};
 
 /// Spends at which a smooth curve is sampled.
 const SAMPLES: usize = 120;
@@ -17,8 +17,9 @@ const SAMPLES: usize = 120;
 /// A cap or an end of the evidence is drawn where it lies within so many times the spends.
 const NEARBY: f64 = 2.5;
 
-/// Digits of the planned amount.
-const AMOUNT_DIGITS: usize = 6;
+/// Pixels by which a curve may be straightened. The drawing library rounds every point; with few
+/// points a curve does not show it.
+const STRAIGHTENED: f64 = 0.12;
 
 /// A point of a curve: spend, and marginal return there.
 type Point = (f64, f64);
@@ -28,6 +29,8 @@ pub(super) struct Panel {
     pub name: String,
     /// `2,400,000 EUR, at cap`.
     pub standing: String,
+    /// The marginal return that the curve meets at the optimum.
+    pub price: f64,
     /// Greatest spend of the panel.
     pub reach: f64,
     /// Spends rising; a tabulated curve falls straight at its knots.
@@ -45,19 +48,21 @@ impl Panel {
         let spend = view.solution.spends[i];
         let height = |spend: f64| view.problem.marginal_return_at(i, spend);
         let position = activity.position(spend);
-        let amount = format!("{} {}", figure(spend, AMOUNT_DIGITS), money(view.labels));
+        let amount = format!("{} {}", figure(spend, TABLE_DIGITS), money(view.labels));
         let standing = match position {
             Position::Between => amount.trim().to_owned(),
             Position::Unfunded => "unfunded".to_owned(),
             bound => format!("{}, {}", amount.trim(), bound.name()),
         };
         let reach = reach_of(view, i);
+        let price = price_of_spend(view, i);
         Self {
             name: activity.name.to_string(),
             standing,
+            price,
             reach,
             curve: curve_points(&activity.curve, reach, height),
-            planned: (spend, height_at_price(view, i, spend)),
+            planned: (spend, height_at_price(view, i, spend, price)),
             today: activity.current.map(|today| (today, height(today))),
             observed: activity.observed,
             floor: activity.floor,
@@ -65,31 +70,50 @@ impl Panel {
         }
     }
 
-    /// Draws the panel's head, bounds, curve and marks.
-    pub(super) fn draw<DB: DrawingBackend>(
+    /// Draws what lies behind grid and axes: the spends that the bounds shut out.
+    pub(super) fn draw_bounds<DB: DrawingBackend>(
         &self,
         canvas: &Canvas<DB>,
         across: &Axis,
         up: &Axis,
     ) -> Result<(), ChartError> {
+        let (top, foot) = (up.at(up.to()), up.at(up.from()));
+        let (left, right) = (across.at(0.0), across.at(self.reach));
+        for (bound, edge, label) in [(self.floor, left, "floor"), (self.cap, right, "cap")] {
+            if !(0.0 < bound && bound < self.reach) {
+                continue;
+            }
+            let x = across.at(bound);
+            canvas.band((x.min(edge), top), (x.max(edge), foot), SHADE)?;
+            canvas.line(&[(x, top), (x, foot)], GREY, 1.0)?;
+            let beyond_right = x + 8.0 + canvas.width_of(label, SMALL) > right;
+            let (aside, align) = if beyond_right {
+                (-5.0, Align::Right)
+            } else {
+                (5.0, Align::Left)
+            };
+            canvas.text(label, (x + aside, top + 8.0), align, SMALL)?;
+        }
+        Ok(())
+    }
+
+    /// Draws the panel's head, price, curve and marks.
+    pub(super) fn draw<DB: DrawingBackend>(
+        &self,
+        canvas: &Canvas<DB>,
+        axes: (&Axis, &Axis),
+        height_written: &dyn Fn(f64) -> String,
+    ) -> Result<(), ChartError> {
+        let (across, up) = axes;
         let (left, right) = (across.at(0.0), across.at(self.reach));
         let top = up.at(up.to());
-        let name = canvas.fitted(&self.name, right - left, PLAIN);
-        canvas.text(&name, (left, top - 44.0), Align::Left, PLAIN)?;
+        let name = canvas.fitted(&self.name, right - left, NAME);
+        canvas.text(&name, (left, top - 42.0), Align::Left, NAME)?;
         let standing = canvas.fitted(&self.standing, right - left, SMALL);
-        canvas.text(&standing, (left, top - 22.0), Align::Left, SMALL)?;
-        for (bound, label) in [(self.floor, "floor"), (self.cap, "cap")] {
-            if 0.0 < bound && bound < self.reach {
-                let x = across.at(bound);
-                canvas.line(&[(x, top), (x, up.at(up.from()))], GREY, 1.5)?;
-                let align = if label == "cap" && x + 40.0 > right {
-                    Align::Right
-                } else {
-                    Align::Left
-                };
-                let aside = if align == Align::Right { -5.0 } else { 5.0 };
-                canvas.text(label, (x + aside, top + 8.0), align, SMALL)?;
-            }
+        canvas.text(&standing, (left, top - 20.0), Align::Left, SMALL)?;
+        if up.holds(self.price) {
+            let y = up.at(self.price);
+            canvas.dashes(&[(left, y), (right, y)], GREEN, 2.0, (14.0, 5.0))?;
         }
         for (points, evidenced) in self.stretches() {
             for inside in within(&points, up) {
@@ -97,6 +121,7 @@ impl Panel {
                     .iter()
                     .map(|&(x, y)| (across.at(x), up.at(y)))
                     .collect();
+                let on_canvas = straightened(&on_canvas);
                 if evidenced {
                     canvas.line(&on_canvas, BLUE, 2.5)?;
                 } else {
@@ -104,13 +129,10 @@ impl Panel {
                 }
             }
         }
-        // A mark beyond the axis stands at its edge.
-        let (lowest, highest) = (up.at(up.from()), up.at(up.to()));
-        let at = |(x, y): Point| (across.at(x), up.at(y).clamp(highest, lowest));
         if let Some(today) = self.today {
-            canvas.mark(Mark::Diamond, at(today), 7.0, VERMILLION)?;
+            draw_mark(canvas, Mark::Diamond, axes, today, height_written)?;
         }
-        canvas.mark(Mark::Disc, at(self.planned), 6.5, BLUE)
+        draw_mark(canvas, Mark::Disc, axes, self.planned, height_written)
     }
 
     /// The curve cut at the ends of the evidence; whether each piece lies within it.
@@ -130,16 +152,52 @@ impl Panel {
     }
 }
 
+/// A mark on the curve. Where the curve leaves the axis it stands at the edge, with an arrow
+/// toward where it belongs and the height there.
+fn draw_mark<DB: DrawingBackend>(
+    canvas: &Canvas<DB>,
+    mark: Mark,
+    (across, up): (&Axis, &Axis),
+    (spend, height): Point,
+    height_written: &dyn Fn(f64) -> String,
+) -> Result<(), ChartError> {
+    let (lowest, highest) = (up.at(up.from()), up.at(up.to()));
+    let at = (across.at(spend), up.at(height).clamp(highest, lowest));
+    let (radius, colour) = match mark {
+        Mark::Disc => (5.5, BLUE),
+        Mark::Diamond => (9.0, VERMILLION),
+    };
+    canvas.mark(mark, at, radius, colour)?;
+    if up.holds(height) || height.is_nan() {
+        return Ok(());
+    }
+    let (arrow, inward) = if height > up.to() {
+        ("↑", 26.0)
+    } else {
+        ("↓", -26.0)
+    };
+    let label = format!("{arrow} {}", height_written(height));
+    let beyond_right = at.0 + canvas.width_of(&label, SMALL) > across.at(across.to());
+    let align = if beyond_right {
+        Align::Right
+    } else {
+        Align::Left
+    };
+    let aside = if beyond_right { -6.0 } else { 6.0 };
+    canvas.text(&label, (at.0 + aside, at.1 + inward), align, SMALL)
+}
+
 /// The marginal return at a spend; at a knot, where it falls from one value to the next, as near
 /// to the price as the fall reaches.
-fn height_at_price(view: &PlanView, i: usize, spend: f64) -> f64 {
+fn height_at_price(view: &PlanView, i: usize, spend: f64, price: f64) -> f64 {
     let activity = &view.problem.activities()[i];
     let next = view.problem.marginal_return_at(i, spend);
     let last = activity.weight * activity.curve.marginal_before(spend);
     let within = spend > activity.floor && spend < activity.cap;
-    match view.solution.shadow_prices.first() {
-        Some(&price) if within && next != last => price.max(next.min(last)).min(next.max(last)),
-        _ => next,
+    if within && next != last {
+        price.max(next.min(last)).min(next.max(last))
+    } else {
+        next
     }
 }
 
@@ -230,4 +288,59 @@ fn within(points: &[Point], up: &Axis) -> Vec<Vec<Point>> {
     parts.push(part);
     parts.retain(|part| part.len() > 1);
     parts
+}
+
+/// The fewest of the points that stay within [`STRAIGHTENED`] of them all: D. Douglas and
+/// T. Peucker, *Cartographica* 10 (1973), from memory.
+fn straightened(points: &[Point]) -> Vec<Point> {
+    let (Some(&first), Some(&last)) = (points.first(), points.last()) else {
+        return Vec::new();
+    };
+    let (across, up) = (last.0 - first.0, last.1 - first.1);
+    let length = across.hypot(up);
+    let aside = |point: Point| {
+        let (x, y) = (point.0 - first.0, point.1 - first.1);
+        if length > 0.0 {
+            (across * y - up * x).abs() / length
+        } else {
+            x.hypot(y)
+        }
+    };
+    let farthest = (1..points.len().saturating_sub(1))
+        .map(|i| (i, aside(points[i])))
+        .max_by(|a, b| a.1.total_cmp(&b.1));
+    match farthest {
+        Some((i, distance)) if distance > STRAIGHTENED => {
+            let mut kept = straightened(&points[..=i]);
+            kept.pop();
+            kept.extend(straightened(&points[i..]));
+            kept
+        }
+        _ if points.len() > 1 => vec![first, last],
+        _ => vec![first],
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn a_straight_line_keeps_its_ends_and_a_step_its_corners() {
+        let line: Vec<Point> = (0..50)
+            .map(|i| (f64::from(i), 2.0 * f64::from(i)))
+            .collect();
+        assert_eq!(straightened(&line), vec![(0.0, 0.0), (49.0, 98.0)]);
+        let step = [(0.0, 9.0), (5.0, 9.0), (5.0, 2.0), (9.0, 2.0)];
+        assert_eq!(straightened(&step), step.to_vec());
+    }
+
+    #[test]
+    fn a_curve_is_cut_where_it_leaves_the_axis() {
+        let up = Axis::new((0.0, 10.0), (100.0, 0.0));
+        let cut = within(&[(0.0, 30.0), (1.0, 10.0), (2.0, 0.0), (3.0, -10.0)], &up);
+        assert_eq!(cut, vec![vec![(1.0, 10.0), (2.0, 0.0)]]);
+        let crossing = within(&[(0.0, 20.0), (2.0, 0.0)], &up);
+        assert_eq!(crossing, vec![vec![(1.0, 10.0), (2.0, 0.0)]]);
+    }
 }

@@ -3,26 +3,37 @@
 use plotters::backend::DrawingBackend;
 
 use super::axis::{Axis, Magnitude};
-use super::canvas::{Align, Canvas, Mark, Picture, render};
-use super::palette::{BLUE, GREY, PALE, VERMILLION};
+use super::canvas::{Align, Canvas, Mark, Picture};
+use super::palette::{BLUE, PALE, VERMILLION};
+use super::rendering::render;
 use super::wording::{HEADING, PLAIN, SMALL, SUBHEADING, by_planned_spend, heading, money};
 use super::{ChartError, Drawing, PlanView};
-use crate::numeric::figures::{figure, signed};
+use crate::numeric::figures::{TABLE_DIGITS, figure, fixed, signed};
 
 const WIDTH: f64 = 1600.0;
 const ROW: f64 = 34.0;
 const TOP: f64 = 150.0;
 const BOTTOM: f64 = 80.0;
+const MARGIN: f64 = 40.0;
 const NAMES_END: f64 = 430.0;
-const PLOT_END: f64 = 1180.0;
-const PLANNED_END: f64 = 1370.0;
-const CHANGE_END: f64 = 1560.0;
+/// Width of a column of amounts, the space before it included.
+const COLUMN: f64 = 160.0;
 
 /// Rows that stand for one activity each; beyond them the rest shares one.
 const MOST_ROWS: usize = 48;
 
-/// Digits of the amounts beside the rows.
-const AMOUNT_DIGITS: usize = 6;
+/// Digits of the total.
+const TOTAL_DIGITS: usize = 6;
+
+/// Digits that the greatest amount beside the rows has at least; the others have as many
+/// decimals.
+const AMOUNT_DIGITS: i32 = 5;
+
+/// Amounts from here on are written in billions, so that their column stays narrow.
+const LONG: f64 = 1e10;
+
+/// Greatest amounts outside this range are written in powers of ten.
+const READABLE: std::ops::Range<f64> = 1e-3..1e15;
 
 struct Row {
     name: String,
@@ -33,11 +44,57 @@ struct Row {
 struct SpendPicture {
     title: String,
     subtitle: String,
-    /// Unit of the amounts beside the rows.
     money: String,
+    /// Whether any activity's spend of today is known.
+    knows_today: bool,
     magnitude: Magnitude,
+    amounts: Amounts,
     rows: Vec<Row>,
     longest: f64,
+}
+
+/// How the amounts beside the rows are written: with the same decimals, so that they align.
+#[derive(Clone, Copy)]
+struct Amounts {
+    magnitude: Magnitude,
+    /// None for powers of ten.
+    decimals: Option<usize>,
+}
+
+impl Amounts {
+    fn of(longest: f64) -> Self {
+        let magnitude = Magnitude::of(if longest < LONG { 0.0 } else { longest });
+        let greatest = longest / magnitude.unit;
+        let digits = if greatest > 0.0 {
+            greatest.log10().floor() as i32 + 1
+        } else {
+            AMOUNT_DIGITS
+        };
+        let decimals = (longest == 0.0 || READABLE.contains(&longest))
+            .then(|| usize::try_from(AMOUNT_DIGITS - digits).unwrap_or(0));
+        Self {
+            magnitude,
+            decimals,
+        }
+    }
+
+    fn written(&self, amount: f64) -> String {
+        match self.decimals {
+            Some(decimals) if amount.is_finite() => fixed(amount / self.magnitude.unit, decimals),
+            _ => figure(amount, TABLE_DIGITS),
+        }
+    }
+
+    fn change_written(&self, change: f64) -> String {
+        let size = self.written(change.abs());
+        if size == self.written(0.0) {
+            signed(0.0, TABLE_DIGITS)
+        } else if change < 0.0 {
+            format!("−{size}")
+        } else {
+            format!("+{size}")
+        }
+    }
 }
 
 /// Draws what every activity has today and what it would have.
@@ -62,12 +119,14 @@ pub fn draw_spend(view: &PlanView) -> Result<Drawing, ChartError> {
         title: heading(view.labels, shows),
         subtitle: subtitle(view, &rows),
         money: money(view.labels).to_owned(),
+        knows_today,
         magnitude,
+        amounts: Amounts::of(longest),
         longest,
         rows,
     };
-    let alt = picture.alt(view);
-    let (png, svg) = render(&picture)?;
+    let alt = picture.alt();
+    let (png, svg) = render(&picture, &picture.title, &alt)?;
     Ok(Drawing {
         stem: "spend",
         title: picture.title,
@@ -107,63 +166,81 @@ fn rows_of(view: &PlanView) -> Vec<Row> {
 
 fn subtitle(view: &PlanView, rows: &[Row]) -> String {
     let count = view.problem.activities().len();
-    let total: f64 = view.solution.spends.iter().sum();
     let activities = if count == 1 { "activity" } else { "activities" };
-    let amount = format!("{} {}", figure(total, AMOUNT_DIGITS), money(view.labels));
+    let total: f64 = view.solution.spends.iter().sum();
+    let amount = format!("{} {}", figure(total, TOTAL_DIGITS), money(view.labels));
+    let today: Option<f64> = rows.iter().map(|row| row.today).sum();
+    let today = today.map_or(String::new(), |today| {
+        format!(" ({} today)", figure(today, TOTAL_DIGITS))
+    });
     let shown = if rows.len() < count {
         format!(", the {MOST_ROWS} with most spend in rows of their own")
     } else {
-        ", most spend first".to_owned()
+        String::new()
     };
-    format!("{count} {activities}, {} planned{shown}", amount.trim())
+    format!(
+        "{count} {activities}, {} planned{today}{shown}",
+        amount.trim()
+    )
 }
 
 impl SpendPicture {
-    fn alt(&self, view: &PlanView) -> String {
+    fn alt(&self) -> String {
         let mut alt = format!("{}. {}.", self.title, self.subtitle);
         for row in self.rows.iter().take(5) {
-            let today = match row.today {
-                Some(today) => format!(", today {}", figure(today, AMOUNT_DIGITS)),
-                None => String::new(),
-            };
-            let planned = format!(
-                "{} {}",
-                figure(row.planned, AMOUNT_DIGITS),
-                money(view.labels)
-            );
+            let unit = self.amounts.magnitude.before(&self.money);
+            let planned = format!("{} {unit}", self.amounts.written(row.planned));
+            let today = row.today.map_or(String::new(), |today| {
+                format!(", today {}", self.amounts.written(today))
+            });
             alt.push_str(&format!(" {}: {}{today}.", row.name, planned.trim()));
         }
         alt
     }
 
-    fn draw_key<DB: DrawingBackend>(&self, canvas: &Canvas<DB>) -> Result<(), ChartError> {
-        let y = 112.0;
-        let mut x = NAMES_END + 10.0;
-        if self.rows.iter().any(|row| row.today.is_some()) {
-            canvas.mark(Mark::Ring, (x, y), 7.0, VERMILLION)?;
-            canvas.text("today", (x + 16.0, y), Align::Left, SMALL)?;
-            x += 110.0;
-        }
-        canvas.mark(Mark::Disc, (x, y), 7.0, BLUE)?;
-        canvas.text("planned", (x + 16.0, y), Align::Left, SMALL)?;
-        let unit = if self.money.is_empty() {
-            String::new()
+    fn columns(&self) -> &'static [&'static str] {
+        if self.knows_today {
+            &["today", "planned", "change"]
         } else {
-            format!(", {}", self.money)
-        };
-        canvas.text(
-            &format!("planned{unit}"),
-            (PLANNED_END, y),
-            Align::Right,
-            SMALL,
-        )?;
-        if self.rows.iter().any(|row| row.today.is_some()) {
-            canvas.text(
-                &format!("change{unit}"),
-                (CHANGE_END, y),
-                Align::Right,
-                SMALL,
-            )?;
+            &["planned"]
+        }
+    }
+
+    fn plot_end(&self) -> f64 {
+        WIDTH - MARGIN - COLUMN * self.columns().len() as f64 - 20.0
+    }
+
+    /// The right edge of a column of amounts, counted from the right.
+    fn column_end(from_right: usize) -> f64 {
+        WIDTH - MARGIN - COLUMN * from_right as f64
+    }
+
+    fn draw_key<DB: DrawingBackend>(&self, canvas: &Canvas<DB>) -> Result<(), ChartError> {
+        let y = 116.0;
+        let mut x = NAMES_END + 10.0;
+        if self.knows_today {
+            canvas.mark(Mark::Diamond, (x, y), 9.0, VERMILLION)?;
+            canvas.text("today", (x + 18.0, y), Align::Left, SMALL)?;
+            x += 100.0;
+        }
+        canvas.mark(Mark::Disc, (x, y), 5.5, BLUE)?;
+        canvas.text("planned", (x + 14.0, y), Align::Left, SMALL)?;
+        x += 110.0;
+        if self.knows_today {
+            for (label, more) in [("more", true), ("less", false)] {
+                draw_change(canvas, (x, x + 36.0), y, more)?;
+                canvas.text(label, (x + 46.0, y), Align::Left, SMALL)?;
+                x += 110.0;
+            }
+        }
+        let unit = self.amounts.magnitude.before(&self.money);
+        for (i, column) in self.columns().iter().rev().enumerate() {
+            let heading = match unit.as_str() {
+                "" => (*column).to_owned(),
+                unit => canvas.fitted(&format!("{column}, {unit}"), COLUMN - 12.0, SMALL),
+            };
+            let at = (Self::column_end(i), y);
+            canvas.text(&heading, at, Align::Right, SMALL)?;
         }
         Ok(())
     }
@@ -175,24 +252,49 @@ impl SpendPicture {
         row: &Row,
         y: f64,
     ) -> Result<(), ChartError> {
-        let name = canvas.fitted(&row.name, NAMES_END - 50.0, PLAIN);
+        let name = canvas.fitted(&row.name, NAMES_END - MARGIN - 14.0, PLAIN);
         canvas.text(&name, (NAMES_END - 14.0, y), Align::Right, PLAIN)?;
+        canvas.line(&[(axis.at(0.0), y), (self.plot_end(), y)], PALE, 1.0)?;
         let planned = axis.at(row.planned);
         if let Some(today) = row.today {
-            let today = axis.at(today);
-            canvas.line(&[(today, y), (planned, y)], GREY, 3.0)?;
-            canvas.mark(Mark::Ring, (today, y), 7.5, VERMILLION)?;
-        } else {
-            canvas.line(&[(axis.at(0.0), y), (planned, y)], GREY, 3.0)?;
+            draw_change(canvas, (axis.at(today), planned), y, row.planned > today)?;
+            canvas.mark(Mark::Diamond, (axis.at(today), y), 9.0, VERMILLION)?;
         }
-        canvas.mark(Mark::Disc, (planned, y), 6.5, BLUE)?;
-        let amount = figure(row.planned, AMOUNT_DIGITS);
-        canvas.text(&amount, (PLANNED_END, y), Align::Right, PLAIN)?;
-        if let Some(today) = row.today {
-            let change = signed(row.planned - today, AMOUNT_DIGITS);
-            canvas.text(&change, (CHANGE_END, y), Align::Right, PLAIN)?;
+        canvas.mark(Mark::Disc, (planned, y), 5.5, BLUE)?;
+        let dash = || "–".to_owned();
+        let today = row.today.map(|today| self.amounts.written(today));
+        let change = row
+            .today
+            .map(|today| self.amounts.change_written(row.planned - today));
+        let planned = self.amounts.written(row.planned);
+        let cells = if self.knows_today {
+            vec![
+                change.unwrap_or_else(dash),
+                planned,
+                today.unwrap_or_else(dash),
+            ]
+        } else {
+            vec![planned]
+        };
+        for (i, cell) in cells.iter().enumerate() {
+            canvas.text(cell, (Self::column_end(i), y), Align::Right, PLAIN)?;
         }
         Ok(())
+    }
+}
+
+/// The way from today to the plan: a line to more, dashes to less.
+fn draw_change<DB: DrawingBackend>(
+    canvas: &Canvas<DB>,
+    (today, planned): (f64, f64),
+    y: f64,
+    more: bool,
+) -> Result<(), ChartError> {
+    let way = [(today, y), (planned, y)];
+    if more {
+        canvas.line(&way, BLUE, 3.0)
+    } else {
+        canvas.dashes(&way, VERMILLION, 3.0, (6.0, 5.0))
     }
 }
 
@@ -203,17 +305,20 @@ impl Picture for SpendPicture {
     }
 
     fn draw<DB: DrawingBackend>(&self, canvas: &Canvas<DB>) -> Result<(), ChartError> {
-        let title = canvas.fitted(&self.title, WIDTH - 80.0, HEADING);
-        canvas.text(&title, (40.0, 40.0), Align::Left, HEADING)?;
-        let subtitle = canvas.fitted(&self.subtitle, WIDTH - 80.0, SUBHEADING);
-        canvas.text(&subtitle, (40.0, 76.0), Align::Left, SUBHEADING)?;
+        let title = canvas.fitted(&self.title, WIDTH - 2.0 * MARGIN, HEADING);
+        canvas.text(&title, (MARGIN, 40.0), Align::Left, HEADING)?;
+        let subtitle = canvas.fitted(&self.subtitle, WIDTH - 2.0 * MARGIN, SUBHEADING);
+        canvas.text(&subtitle, (MARGIN, 76.0), Align::Left, SUBHEADING)?;
         self.draw_key(canvas)?;
 
         let bottom = TOP + ROW * self.rows.len() as f64;
-        let axis = Axis::new((0.0, 1.03 * self.longest), (NAMES_END + 10.0, PLOT_END));
+        let axis = Axis::new(
+            (0.0, 1.03 * self.longest),
+            (NAMES_END + 10.0, self.plot_end()),
+        );
         for tick in axis.ticks(6) {
             let x = axis.at(tick);
-            canvas.line(&[(x, TOP - 14.0), (x, bottom)], PALE, 1.0)?;
+            canvas.line(&[(x, TOP - 8.0), (x, bottom)], PALE, 1.0)?;
             canvas.text(
                 &self.magnitude.written(tick),
                 (x, bottom + 16.0),
@@ -227,7 +332,7 @@ impl Picture for SpendPicture {
         } else {
             format!("spend, {unit}")
         };
-        let middle = f64::midpoint(NAMES_END + 10.0, PLOT_END);
+        let middle = f64::midpoint(NAMES_END + 10.0, self.plot_end());
         canvas.text(&caption, (middle, bottom + 44.0), Align::Centre, SMALL)?;
         for (i, row) in self.rows.iter().enumerate() {
             self.draw_row(canvas, &axis, row, TOP + ROW * (i as f64 + 0.5))?;

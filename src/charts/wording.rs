@@ -9,21 +9,37 @@ use crate::model::Labels;
 /// Heading of a picture.
 pub(super) const HEADING: Type = Type {
     size: 26.0,
+    bold: true,
     colour: INK,
 };
 /// What the heading's line does not say.
 pub(super) const SUBHEADING: Type = Type {
     size: 18.0,
+    bold: false,
     colour: GREY_INK,
 };
 /// Names and amounts.
 pub(super) const PLAIN: Type = Type {
     size: 17.0,
+    bold: false,
+    colour: INK,
+};
+/// Heading of a panel.
+pub(super) const NAME: Type = Type {
+    size: 17.0,
+    bold: true,
+    colour: INK,
+};
+/// The price on its axis.
+pub(super) const SMALL_BOLD: Type = Type {
+    size: 14.0,
+    bold: true,
     colour: INK,
 };
 /// Numbers on axes.
 pub(super) const SMALL: Type = Type {
     size: 14.0,
+    bold: false,
     colour: GREY_INK,
 };
 
@@ -67,4 +83,16 @@ pub(super) fn by_planned_spend(view: &PlanView) -> Vec<usize> {
     let mut order: Vec<usize> = (0..spends.len()).collect();
     order.sort_by(|&i, &j| spends[j].total_cmp(&spends[i]));
     order
+}
+
+/// What a unit of an activity's spend uses of what is limited, at the shadow prices, Σ λ_k a_ki:
+/// the marginal return that its curve meets at the optimum.
+pub(super) fn price_of_spend(view: &PlanView, i: usize) -> f64 {
+    let constraints = view.problem.constraints().iter();
+    constraints
+        .zip(&view.solution.shadow_prices)
+        .map(|(constraint, price)| (constraint.use_per_unit(i), price))
+        .filter(|(use_per_unit, _)| *use_per_unit != 0.0)
+        .map(|(use_per_unit, price)| use_per_unit * price)
+        .sum()
 }

@@ -1,0 +1,97 @@
+//! How far up the marginal curves' common axis goes, and the unit of its numbers.
+
+use super::axis::Magnitude;
+use super::panel::Panel;
+
+/// How many times the price the upright axis reaches at the most: marginal returns of first
+/// units may be without bound, and what matters is near the price.
+const REACH: f64 = 3.2;
+
+/// Share of the axis that returns of the other sign may take.
+const OTHER_SIDE: f64 = 0.25;
+
+/// Share of the highest marginal return above which the lowest counts as far from zero.
+const FAR_FROM_ZERO: f64 = 0.4;
+
+/// Times its reach that the axis may grow so that no planned point lies beyond it.
+const OUTLYING: f64 = 2.0;
+
+/// The least rate that is written without zeros after its point or, in billions, with one.
+const READABLE_RATE: f64 = 0.05;
+
+/// The upright axis: from zero to where the curves go, but not far beyond the price.
+pub(super) fn range_of(panels: &[Panel], price: f64) -> (f64, f64) {
+    let finite = |value: &f64| value.is_finite();
+    let heights = || {
+        let curves = panels
+            .iter()
+            .flat_map(|panel| panel.curve.iter().map(|&(_, height)| height));
+        curves
+            .chain(panels.iter().map(|panel| panel.planned.1))
+            .filter(finite)
+    };
+    let steepest = heights().fold(0.0, greater).abs();
+    let price = if price.is_finite() { price } else { 0.0 };
+    let least_reach = (REACH * price.abs()).max(typical_height(panels));
+    let planned = panels.iter().map(|panel| 1.1 * panel.planned.1.abs());
+    let reach = planned
+        .filter(|height| *height <= OUTLYING * least_reach)
+        .fold(least_reach, f64::max);
+    let reach = steepest.min(reach).max(1.2 * price.abs());
+    let lowest = heights().fold(0.0, f64::min).max(-reach);
+    let highest = heights().fold(0.0, f64::max).min(reach);
+    let (lowest, highest) = (
+        lowest.min(1.2 * price.min(0.0)),
+        highest.max(1.2 * price.max(0.0)),
+    );
+    let least = heights().fold(f64::INFINITY, f64::min);
+    if least > FAR_FROM_ZERO * highest {
+        // A zero on the axis would flatten curves that all lie far from it.
+        let margin = 0.15 * (highest - least);
+        (least - margin, highest + margin)
+    } else if highest >= -lowest {
+        (lowest.max(-OTHER_SIDE * highest), 1.04 * highest)
+    } else {
+        (1.04 * lowest, highest.min(-OTHER_SIDE * lowest))
+    }
+}
+
+/// Whichever is farther from zero.
+pub(super) fn greater(most: f64, value: f64) -> f64 {
+    if value.abs() > most.abs() {
+        value
+    } else {
+        most
+    }
+}
+
+/// A height that the axis should reach where the price says nothing, because it is zero or far
+/// below most plans' marginal returns: a little above the middle one of the planned points and of
+/// the curves' middles.
+fn typical_height(panels: &[Panel]) -> f64 {
+    let mut heights: Vec<f64> = panels
+        .iter()
+        .flat_map(|panel| {
+            let middle = panel.curve.get(panel.curve.len() / 2);
+            [panel.planned.1, middle.map_or(0.0, |point| point.1)]
+        })
+        .map(f64::abs)
+        .filter(|height| height.is_finite())
+        .collect();
+    heights.sort_by(f64::total_cmp);
+    1.6 * heights.get(heights.len() / 2).copied().unwrap_or(0.0)
+}
+
+/// The power of a thousand of money for which the rate is at least a tenth.
+pub(super) fn rate_magnitude(rate: f64) -> Magnitude {
+    [
+        (1.0, ""),
+        (1e3, "thousand"),
+        (1e6, "million"),
+        (1e9, "billion"),
+    ]
+    .into_iter()
+    .map(|(unit, name)| Magnitude { unit, name })
+    .find(|per| rate.abs() * per.unit >= READABLE_RATE)
+    .unwrap_or(Magnitude::of(0.0))
+}
