@@ -16,8 +16,10 @@ const FAR_FROM_ZERO: f64 = 0.4;
 /// Times its reach that the axis may grow so that no planned point lies beyond it.
 const OUTLYING: f64 = 2.0;
 
-/// The least rate that is written without zeros after its point or, in billions, with one.
-const READABLE_RATE: f64 = 0.05;
+/// The least rate for which a unit of money is large enough, and the least for which the largest
+/// is not given up for plain money.
+const READABLE_RATE: f64 = 0.5;
+const READABLE_IN_BILLIONS: f64 = 1e-3;
 
 /// The upright axis: from zero to where the curves go, but not far beyond the price.
 pub(super) fn range_of(panels: &[Panel], price: f64) -> (f64, f64) {
@@ -44,7 +46,7 @@ pub(super) fn range_of(panels: &[Panel], price: f64) -> (f64, f64) {
         lowest.min(1.2 * price.min(0.0)),
         highest.max(1.2 * price.max(0.0)),
     );
-    let least = heights().fold(f64::INFINITY, f64::min);
+    let least = heights().fold(price, f64::min);
     if least > FAR_FROM_ZERO * highest {
         // A zero on the axis would flatten curves that all lie far from it.
         let margin = 0.15 * (highest - least);
@@ -82,16 +84,37 @@ fn typical_height(panels: &[Panel]) -> f64 {
     1.6 * heights.get(heights.len() / 2).copied().unwrap_or(0.0)
 }
 
-/// The power of a thousand of money for which the rate is at least a tenth.
+/// The power of a thousand of money for which the rate has few zeros after its point.
 pub(super) fn rate_magnitude(rate: f64) -> Magnitude {
-    [
-        (1.0, ""),
-        (1e3, "thousand"),
-        (1e6, "million"),
-        (1e9, "billion"),
-    ]
-    .into_iter()
-    .map(|(unit, name)| Magnitude { unit, name })
-    .find(|per| rate.abs() * per.unit >= READABLE_RATE)
-    .unwrap_or(Magnitude::of(0.0))
+    let named = [
+        (1.0, "", READABLE_RATE),
+        (1e3, "thousand", READABLE_RATE),
+        (1e6, "million", READABLE_RATE),
+        (1e9, "billion", READABLE_IN_BILLIONS),
+    ];
+    named
+        .into_iter()
+        .find(|(unit, _, least)| rate.abs() * unit >= *least)
+        .map_or(Magnitude::of(0.0), |(unit, name, _)| Magnitude {
+            unit,
+            name,
+        })
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn rates_are_written_without_many_zeros() {
+        for (rate, name) in [
+            (9.1, ""),
+            (0.0031, "thousand"),
+            (2.8e-5, "million"),
+            (8e-11, "billion"),
+            (1e-20, ""),
+        ] {
+            assert_eq!(rate_magnitude(rate).name, name, "{rate}");
+        }
+    }
 }

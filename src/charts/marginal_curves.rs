@@ -24,7 +24,7 @@ const TOP: f64 = 150.0;
 const MARGIN: f64 = 40.0;
 const BOTTOM: f64 = 60.0;
 /// Heights in a panel beside the curves: its name and amount, and its numbers.
-const PANEL_HEAD: f64 = 58.0;
+const PANEL_HEAD: f64 = 64.0;
 const PANEL_FOOT: f64 = 40.0;
 /// Between two panels side by side.
 const GAP: f64 = 34.0;
@@ -161,8 +161,8 @@ impl MarginalPicture {
     fn panel_height(&self) -> f64 {
         match self.rows() {
             0 | 1 => 460.0,
-            2 => 380.0,
-            _ => 280.0,
+            2 => 385.0,
+            _ => 285.0,
         }
     }
 
@@ -213,7 +213,8 @@ impl MarginalPicture {
                 canvas.dashes(&[(x, y), (x + 36.0, y)], BLUE, 2.5, (5.0, 5.0))
             })?;
         }
-        next(&self.price_label, &|x| {
+        let price_label = canvas.fitted(&self.price_label, WIDTH / 2.0, SMALL);
+        next(&price_label, &|x| {
             canvas.dashes(&[(x, y), (x + 36.0, y)], GREEN, 2.5, (14.0, 5.0))
         })?;
         next("planned", &|x| {
@@ -302,8 +303,9 @@ impl Picture for MarginalPicture {
         let middle = f64::midpoint(TOP, self.bottom());
         let upright = canvas.fitted(&self.rate_unit, self.bottom() - TOP, SMALL);
         canvas.upright_text(&upright, (MARGIN + 6.0, middle), SMALL)?;
+        let spend_unit = canvas.fitted(&self.spend_unit, room, SMALL);
         canvas.text(
-            &self.spend_unit,
+            &spend_unit,
             (left + room / 2.0, self.bottom() + 14.0),
             Align::Centre,
             SMALL,

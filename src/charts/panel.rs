@@ -70,7 +70,8 @@ impl Panel {
         }
     }
 
-    /// Draws what lies behind grid and axes: the spends that the bounds shut out.
+    /// Draws what lies behind grid and curve: the spends that the bounds shut out, each bound
+    /// named above its line.
     pub(super) fn draw_bounds<DB: DrawingBackend>(
         &self,
         canvas: &Canvas<DB>,
@@ -79,20 +80,22 @@ impl Panel {
     ) -> Result<(), ChartError> {
         let (top, foot) = (up.at(up.to()), up.at(up.from()));
         let (left, right) = (across.at(0.0), across.at(self.reach));
+        let within = |bound: f64| 0.0 < bound && bound < self.reach;
+        let mut named_to = left;
         for (bound, edge, label) in [(self.floor, left, "floor"), (self.cap, right, "cap")] {
-            if !(0.0 < bound && bound < self.reach) {
+            if !within(bound) {
                 continue;
             }
             let x = across.at(bound);
             canvas.band((x.min(edge), top), (x.max(edge), foot), SHADE)?;
             canvas.line(&[(x, top), (x, foot)], GREY, 1.0)?;
-            let beyond_right = x + 8.0 + canvas.width_of(label, SMALL) > right;
-            let (aside, align) = if beyond_right {
-                (-5.0, Align::Right)
-            } else {
-                (5.0, Align::Left)
-            };
-            canvas.text(label, (x + aside, top + 8.0), align, SMALL)?;
+            let half = canvas.width_of(label, SMALL) / 2.0;
+            let at = x.min(right - half).max(left + half);
+            // Where the bounds are too close for two names, their shades must do.
+            if at - half >= named_to {
+                canvas.text(label, (at, top - 8.0), Align::Centre, SMALL)?;
+                named_to = at + half + 8.0;
+            }
         }
         Ok(())
     }
@@ -108,9 +111,9 @@ impl Panel {
         let (left, right) = (across.at(0.0), across.at(self.reach));
         let top = up.at(up.to());
         let name = canvas.fitted(&self.name, right - left, NAME);
-        canvas.text(&name, (left, top - 42.0), Align::Left, NAME)?;
+        canvas.text(&name, (left, top - 50.0), Align::Left, NAME)?;
         let standing = canvas.fitted(&self.standing, right - left, SMALL);
-        canvas.text(&standing, (left, top - 20.0), Align::Left, SMALL)?;
+        canvas.text(&standing, (left, top - 28.0), Align::Left, SMALL)?;
         if up.holds(self.price) {
             let y = up.at(self.price);
             canvas.dashes(&[(left, y), (right, y)], GREEN, 2.0, (14.0, 5.0))?;

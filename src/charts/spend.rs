@@ -332,6 +332,7 @@ impl Picture for SpendPicture {
         } else {
             format!("spend, {unit}")
         };
+        let caption = canvas.fitted(&caption, self.plot_end() - NAMES_END, SMALL);
         let middle = f64::midpoint(NAMES_END + 10.0, self.plot_end());
         canvas.text(&caption, (middle, bottom + 44.0), Align::Centre, SMALL)?;
         for (i, row) in self.rows.iter().enumerate() {
