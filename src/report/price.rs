@@ -59,7 +59,7 @@ pub(super) fn price_facts(
     };
     facts.push(Fact::new(format!("{amount} less"), less));
     facts.push(Fact::new(
-        "This holds",
+        "Same bounds",
         range_in_words(constraint, price, units),
     ));
     if let Some(cost) = marginal_cost(aim, price, units) {
@@ -96,7 +96,10 @@ fn range_in_words(constraint: &Constraint, price: &ConstraintPrice, units: Units
     if !price.binding {
         return format!("{range}: the limit is not what holds the plan");
     }
-    format!("{range}: the same activities stay at their bounds")
+    if price.holds_from.is_some() && price.holds_from == price.holds_to {
+        return format!("{range}: any other moves an activity onto a bound or off one");
+    }
+    format!("{range}: no activity meets a bound or leaves one")
 }
 
 fn units_after(number: String, units: Units) -> String {
