@@ -13,6 +13,10 @@ use super::ChartError;
 /// of that kind; the embedded one is among the widest, so that no text outgrows its place.
 pub(super) const FONT: &str = "sans-serif";
 
+/// Pixels by which a curve may be straightened. The drawing library rounds every point; with few
+/// points a curve does not show it.
+const STRAIGHTENED: f64 = 0.12;
+
 /// Where a text stands against its point.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub(super) enum Align {
@@ -275,4 +279,50 @@ pub(super) fn printable(text: &str) -> String {
                 && !matches!(character, '\u{200b}'..='\u{200f}' | '\u{202a}'..='\u{202e}' | '\u{2066}'..='\u{2069}' | '\u{61c}' | '\u{feff}' | '\u{fffe}' | '\u{ffff}')
         })
         .collect()
+}
+
+/// The fewest of the points that stay within [`STRAIGHTENED`] of them all: D. Douglas and
+/// T. Peucker, *Cartographica* 10 (1973), from memory.
+pub(super) fn straightened(points: &[(f64, f64)]) -> Vec<(f64, f64)> {
+    let (Some(&first), Some(&last)) = (points.first(), points.last()) else {
+        return Vec::new();
+    };
+    let (across, up) = (last.0 - first.0, last.1 - first.1);
+    let length = across.hypot(up);
+    let aside = |point: (f64, f64)| {
+        let (x, y) = (point.0 - first.0, point.1 - first.1);
+        if length > 0.0 {
+            (across * y - up * x).abs() / length
+        } else {
+            x.hypot(y)
+        }
+    };
+    let farthest = (1..points.len().saturating_sub(1))
+        .map(|i| (i, aside(points[i])))
+        .max_by(|a, b| a.1.total_cmp(&b.1));
+    match farthest {
+        Some((i, distance)) if distance > STRAIGHTENED => {
+            let mut kept = straightened(&points[..=i]);
+            kept.pop();
+            kept.extend(straightened(&points[i..]));
+            kept
+        }
+        _ if points.len() > 1 => vec![first, last],
+        _ => vec![first],
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn a_straight_line_keeps_its_ends_and_a_step_its_corners() {
+        let line: Vec<(f64, f64)> = (0..50)
+            .map(|i| (f64::from(i), 2.0 * f64::from(i)))
+            .collect();
+        assert_eq!(straightened(&line), vec![(0.0, 0.0), (49.0, 98.0)]);
+        let step = [(0.0, 9.0), (5.0, 9.0), (5.0, 2.0), (9.0, 2.0)];
+        assert_eq!(straightened(&step), step.to_vec());
+    }
 }

@@ -3,7 +3,7 @@
 use plotters::backend::DrawingBackend;
 
 use super::axis::Axis;
-use super::canvas::{Align, Canvas, Mark};
+use super::canvas::{Align, Canvas, Mark, straightened};
 use super::palette::{BLUE, GREEN, GREY, SHADE, VERMILLION};
 use super::wording::{NAME, SMALL, money, price_of_spend};
 use super::{ChartError, PlanView};
@@ -16,10 +16,6 @@ const SAMPLES: usize = 120;
 
 /// A cap or an end of the evidence is drawn where it lies within so many times the spends.
 const NEARBY: f64 = 2.5;
-
-/// Pixels by which a curve may be straightened. The drawing library rounds every point; with few
-/// points a curve does not show it.
-const STRAIGHTENED: f64 = 0.12;
 
 /// A point of a curve: spend, and marginal return there.
 type Point = (f64, f64);
@@ -286,57 +282,18 @@ fn within(points: &[Point], up: &Axis) -> Vec<Vec<Point>> {
             parts.push(std::mem::take(&mut part));
             part.push(inside[0]);
         }
-        part.push(inside[1]);
+        if inside[1] != inside[0] {
+            part.push(inside[1]);
+        }
     }
     parts.push(part);
     parts.retain(|part| part.len() > 1);
     parts
 }
 
-/// The fewest of the points that stay within [`STRAIGHTENED`] of them all: D. Douglas and
-/// T. Peucker, *Cartographica* 10 (1973), from memory.
-fn straightened(points: &[Point]) -> Vec<Point> {
-    let (Some(&first), Some(&last)) = (points.first(), points.last()) else {
-        return Vec::new();
-    };
-    let (across, up) = (last.0 - first.0, last.1 - first.1);
-    let length = across.hypot(up);
-    let aside = |point: Point| {
-        let (x, y) = (point.0 - first.0, point.1 - first.1);
-        if length > 0.0 {
-            (across * y - up * x).abs() / length
-        } else {
-            x.hypot(y)
-        }
-    };
-    let farthest = (1..points.len().saturating_sub(1))
-        .map(|i| (i, aside(points[i])))
-        .max_by(|a, b| a.1.total_cmp(&b.1));
-    match farthest {
-        Some((i, distance)) if distance > STRAIGHTENED => {
-            let mut kept = straightened(&points[..=i]);
-            kept.pop();
-            kept.extend(straightened(&points[i..]));
-            kept
-        }
-        _ if points.len() > 1 => vec![first, last],
-        _ => vec![first],
-    }
-}
-
 #[cfg(test)]
 mod tests {
     use super::*;
-
-    #[test]
-    fn a_straight_line_keeps_its_ends_and_a_step_its_corners() {
-        let line: Vec<Point> = (0..50)
-            .map(|i| (f64::from(i), 2.0 * f64::from(i)))
-            .collect();
-        assert_eq!(straightened(&line), vec![(0.0, 0.0), (49.0, 98.0)]);
-        let step = [(0.0, 9.0), (5.0, 9.0), (5.0, 2.0), (9.0, 2.0)];
-        assert_eq!(straightened(&step), step.to_vec());
-    }
 
     #[test]
     fn a_curve_is_cut_where_it_leaves_the_axis() {
