@@ -50,7 +50,8 @@ fn whole_solve(bencher: Bencher, count: usize) {
 fn prices_on_both_sides(bencher: Bencher, count: usize) {
     let plan = mixed_plan(count);
     let solution = solve(&plan).expect("the budget covers the floors");
+    let demand = demand_of(&plan).expect("one budget");
     bencher
         .counter(ItemsCount::new(count))
-        .bench(|| price_constraints(&plan, &solution));
+        .bench(|| price_constraints(&plan, &solution, &demand));
 }

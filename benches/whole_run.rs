@@ -12,7 +12,7 @@ use isomargin::input::{PlanRequest, read_plan};
 use isomargin::model::Problem;
 use isomargin::report::{ActivityRows, render_allocation};
 use isomargin::sensitivity::price_constraints;
-use isomargin::solver::solve;
+use isomargin::solver::{demand_of, solve_from};
 use mixed_plan::mixed_plan;
 
 const SIZES: [usize; 4] = [12, 1_000, 100_000, 1_000_000];
@@ -108,9 +108,10 @@ fn read_solve_certify_price_and_write(bencher: Bencher, count: usize) {
     let spends = folder.path().join("spends.csv");
     bencher.counter(ItemsCount::new(count)).bench(|| {
         let plan = read_plan(&request).expect("the bench's own plan");
-        let solution = solve(&plan.problem).expect("a budget above the floors");
+        let demand = demand_of(&plan.problem).expect("one budget");
+        let solution = solve_from(&plan.problem, &demand).expect("a budget above the floors");
         let certificate = certify(&plan.problem, &solution, CrossCheck::WhenQuick);
-        let prices = price_constraints(&plan.problem, &solution);
+        let prices = price_constraints(&plan.problem, &solution, &demand);
         let mut file = std::fs::File::create(&spends).expect("a file for the bench");
         let rows = ActivityRows::new(&plan.problem, &solution, &solution.spends);
         render_allocation(&rows, &mut file).expect("room on the disk");

@@ -347,7 +347,11 @@ fn random_plans_agree_with_a_conic_solver() {
             "{round}: {ours} {theirs}"
         );
         compared += 1;
-        let prices = isomargin::sensitivity::price_constraints(&plan, &solution).unwrap();
+        let prices = isomargin::sensitivity::price_constraints(
+            &plan,
+            &solution,
+            &isomargin::solver::demand_of(&plan).unwrap(),
+        );
         if prices[0].one_more == prices[0].one_less {
             let theirs = if plan.constraints()[0].sense == Sense::AtLeast {
                 -dual

@@ -6,7 +6,7 @@ use isomargin::curves::{
 };
 use isomargin::model::{Activity, Aim, Constraint, Position, Problem};
 use isomargin::sensitivity::{ConstraintPrice, price_constraints};
-use isomargin::solver::solve;
+use isomargin::solver::{demand_of, solve};
 use rand::{Rng, SeedableRng};
 use rand_chacha::ChaCha8Rng;
 
@@ -34,7 +34,7 @@ fn bounded(curve: Curve, floor: f64, cap: f64) -> Activity {
 fn price_at(aim: Aim, activities: &[Activity], constraint: Constraint) -> ConstraintPrice {
     let plan = Problem::new(aim, activities.to_vec(), vec![constraint]).unwrap();
     let solution = solve(&plan).unwrap();
-    price_constraints(&plan, &solution).unwrap()[0]
+    price_constraints(&plan, &solution, &demand_of(&plan).unwrap())[0]
 }
 
 #[test]

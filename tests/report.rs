@@ -13,7 +13,7 @@ use isomargin::report::{
     render_text, render_understood,
 };
 use isomargin::sensitivity::{ConstraintPrice, price_constraints};
-use isomargin::solver::{round_spends, solve};
+use isomargin::solver::{demand_of, round_spends, solve};
 
 const PIPED: TextOptions = TextOptions {
     width: 80,
@@ -103,7 +103,7 @@ impl Solved {
                 encloses: true,
             }),
         };
-        let prices = price_constraints(&problem, &solution).unwrap();
+        let prices = price_constraints(&problem, &solution, &demand_of(&problem).unwrap());
         Self {
             labels,
             problem,

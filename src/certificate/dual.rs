@@ -151,12 +151,16 @@ impl Share {
         self.scale.add(value.abs());
         self.primal = worst(self.primal, out_of_bounds(activity, spend));
 
-        // Nothing can be gained at a spend whose last unit earns the price. No plan gives the
+        // Nothing can be gained at a spend whose last unit earns the price, to a few roundings. No plan gives the
         // activity more than the limits leave beside the floors.
         let (floor, cap) = (activity.floor, activity.cap);
         let most = cap.min(floor + rooms.beyond_floor(problem, i));
         let earning = worth.inverse_marginal(price).clipped(floor, most);
-        if earning.least <= spend && spend <= earning.greatest && !price.is_nan() {
+        let earns_the_price = earning.least * (1.0 - SPEND_ROUNDING) <= spend
+            && spend <= earning.greatest * (1.0 + SPEND_ROUNDING)
+            && floor <= spend
+            && spend <= cap;
+        if earns_the_price && !price.is_nan() {
             return;
         }
         // What the next unit earns beyond the price, and what the last one earned below it, at

@@ -17,7 +17,7 @@ use crate::report::{
     render_no_plan_json, render_summary, render_text,
 };
 use crate::sensitivity::price_constraints;
-use crate::solver::{RoundError, SolveError, round_spends, solve};
+use crate::solver::{RoundError, SolveError, demand_of, round_spends, solve_from};
 
 /// Splits the budget of a plan and reports it.
 pub(super) fn allocate(
@@ -36,8 +36,10 @@ pub(super) fn allocate(
         .collect();
     refuse_inputs(&arguments.allocation, &inputs)?;
 
-    let solution = match solve(problem) {
-        Ok(solution) => solution,
+    let solved = demand_of(problem)
+        .and_then(|demand| solve_from(problem, &demand).map(|solution| (solution, demand)));
+    let (solution, demand) = match solved {
+        Ok(solved) => solved,
         Err(fault) => {
             noticed.narrate(terminal);
             return refuse(arguments, &plan, &fault, terminal);
@@ -49,8 +51,7 @@ pub(super) fn allocate(
         CrossCheck::WhenQuick
     };
     let certificate = certify(problem, &solution, cross_check);
-    let prices = price_constraints(problem, &solution)
-        .map_err(|fault| Failure::Data(worded(&fault, problem)))?;
+    let prices = price_constraints(problem, &solution, &demand);
     let rounding = match &arguments.round {
         Some(step) => Some(rounded(problem, &solution, step.value)?),
         None => None,

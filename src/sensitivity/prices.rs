@@ -9,7 +9,7 @@ use rayon::prelude::*;
 use crate::curves::{Curve, ReturnCurve};
 use crate::model::{Problem, Sense, Solution};
 use crate::numeric::BLOCK;
-use crate::solver::{Demand, SolveError, demand_of};
+use crate::solver::Demand;
 
 /// The price of one constraint, on both sides.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -36,15 +36,13 @@ pub struct ConstraintPrice {
 }
 
 /// The price of every constraint of a solved plan, in the order of the constraints.
-///
-/// # Errors
-/// [`SolveError`] for a plan that the solver refuses too.
+/// `demand` is the problem's own.
 pub fn price_constraints(
     problem: &Problem,
     solution: &Solution,
-) -> Result<Vec<ConstraintPrice>, SolveError> {
-    let demand = demand_of(problem)?;
-    Ok(vec![price_limit(problem, solution, &demand)])
+    demand: &Demand,
+) -> Vec<ConstraintPrice> {
+    vec![price_limit(problem, solution, demand)]
 }
 
 fn price_limit(problem: &Problem, solution: &Solution, demand: &Demand) -> ConstraintPrice {

@@ -198,6 +198,8 @@ pub(super) fn compile(problem: &Problem) -> Demand {
         lines.reserve(blocks.iter().map(|block| block.lines[group].len()).sum());
     }
     for mut block in blocks {
+        whole.floors.join(block.floors);
+        whole.caps.join(block.caps);
         whole.fixed.join(block.fixed);
         for (lines, more) in whole.lines.iter_mut().zip(&mut block.lines) {
             lines.append(more);
@@ -213,6 +215,8 @@ pub(super) fn compile(problem: &Problem) -> Demand {
 fn push(demand: &mut Demand, problem: &Problem, i: usize) {
     let activity = &problem.activities()[i];
     let a = problem.constraints()[0].use_per_unit(i);
+    demand.floors.add(a * activity.floor);
+    demand.caps.add(a * activity.cap);
     match Answer::of(problem, i) {
         Answer::Fixed => demand.fixed.add(a * activity.floor),
         Answer::Line(scale, line) => demand.lines[scale as usize].push(line),

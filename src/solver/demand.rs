@@ -163,6 +163,9 @@ impl NumericDemand {
 /// The demand of all activities, grouped by the form of their answer to a price.
 #[derive(Debug, Clone, Default)]
 pub struct Demand {
+    /// Use of all floors, and of all caps.
+    pub(super) floors: CompensatedSum,
+    pub(super) caps: CompensatedSum,
     /// Use that does not depend on the price.
     pub(super) fixed: CompensatedSum,
     /// One group for each of [`PriceScale::ALL`].
@@ -211,6 +214,14 @@ impl Demand {
         }
     }
 
+    /// What all floors, and what all caps, use; units of the limit.
+    pub fn of_bounds(&self) -> UseRange {
+        UseRange {
+            least: self.floors.total(),
+            greatest: self.caps.total(),
+        }
+    }
+
     /// How many terms one evaluation sums.
     pub(super) fn terms(&self) -> usize {
         self.lines.iter().map(Vec::len).sum::<usize>()
@@ -233,6 +244,8 @@ impl Demand {
         fixed.add(self.fixed.total() / stride as f64);
         Self {
             fixed,
+            floors: CompensatedSum::default(),
+            caps: CompensatedSum::default(),
             lines: [0, 1, 2, 3].map(|group| every(&self.lines[group], stride)),
             powers: every(&self.powers, stride),
             pieces: every(&self.pieces, stride),

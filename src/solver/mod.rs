@@ -22,7 +22,6 @@ pub use rounding::{RoundError, Rounded, round_spends};
 
 use crate::curves::ReturnCurve;
 use crate::model::{Activity, Problem, Sense, Solution, UsePerUnit};
-use crate::numeric::block_sums;
 use price::PriceBracket;
 
 /// The best plan: the spends at which the last unit earns the same everywhere.
@@ -31,10 +30,20 @@ use price::PriceBracket;
 /// [`SolveError`] where no best plan exists, or where the plan has not exactly one constraint
 /// with positive use.
 pub fn solve(problem: &Problem) -> Result<Solution, SolveError> {
-    let demand = demand_of(problem)?;
+    solve_from(problem, &demand_of(problem)?)
+}
+
+/// [`solve`] from the problem's own demand, for those who go on to use it.
+///
+/// # Errors
+/// [`SolveError`] where no best plan exists.
+pub fn solve_from(problem: &Problem, demand: &Demand) -> Result<Solution, SolveError> {
     let constraint = &problem.constraints()[0];
     let (limit, sense) = (constraint.limit, constraint.sense);
-    let [least_use, greatest_use] = use_of_bounds(problem);
+    let UseRange {
+        least: least_use,
+        greatest: greatest_use,
+    } = demand.of_bounds();
     let too_low = limit < least_use && sense != Sense::AtLeast;
     let too_high = limit > greatest_use && sense != Sense::AtMost;
     if too_low || too_high {
@@ -53,10 +62,10 @@ pub fn solve(problem: &Problem) -> Result<Solution, SolveError> {
     } else if limit == greatest_use && sense != Sense::AtMost {
         (last_unit_price(problem), all_at(|activity| activity.cap))
     } else {
-        let bracket = if price_is_zero(&demand, sense, limit) {
+        let bracket = if price_is_zero(demand, sense, limit) {
             PriceBracket::exactly(0.0)
         } else {
-            price::enclose(&demand, sense, limit)
+            price::enclose(demand, sense, limit)
         };
         (
             bracket.price(),
@@ -90,15 +99,6 @@ pub fn demand_of(problem: &Problem) -> Result<Demand, SolveError> {
         return Err(SolveError::UseNotPositive { activity });
     }
     Ok(compile::compile(problem))
-}
-
-/// What all floors, and what all caps, use of the plan's one constraint.
-fn use_of_bounds(problem: &Problem) -> [f64; 2] {
-    let constraint = &problem.constraints()[0];
-    block_sums(problem.activities().len(), |i| {
-        let (activity, use_per_unit) = (&problem.activities()[i], constraint.use_per_unit(i));
-        [use_per_unit * activity.floor, use_per_unit * activity.cap]
-    })
 }
 
 /// Whether the limit does not bind: at price zero the activities ask for no more than an upper
