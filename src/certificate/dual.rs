@@ -151,11 +151,9 @@ impl Share {
         self.scale.add(value.abs());
         self.primal = worst(self.primal, out_of_bounds(activity, spend));
 
-        // Nothing can be gained at a spend whose last unit earns the price, to a few roundings. No plan gives the
-        // activity more than the limits leave beside the floors.
+        // Nothing can be gained at a spend whose last unit earns the price, to a few roundings.
         let (floor, cap) = (activity.floor, activity.cap);
-        let most = cap.min(floor + rooms.beyond_floor(problem, i));
-        let earning = worth.inverse_marginal(price).clipped(floor, most);
+        let earning = worth.inverse_marginal(price).clipped(floor, cap);
         let earns_the_price = earning.least * (1.0 - SPEND_ROUNDING) <= spend
             && spend <= earning.greatest * (1.0 + SPEND_ROUNDING)
             && floor <= spend
@@ -163,6 +161,8 @@ impl Share {
         if earns_the_price && !price.is_nan() {
             return;
         }
+        // No plan gives the activity more than the limits leave beside the floors.
+        let best = earning.least.min(floor + rooms.beyond_floor(problem, i));
         // What the next unit earns beyond the price, and what the last one earned below it, at
         // spends a few roundings away.
         let mut first_order = 0.0;
@@ -170,24 +170,23 @@ impl Share {
             let more = (spend * (1.0 + SPEND_ROUNDING)).max(spend + f64::MIN_POSITIVE);
             let next = worth.marginal(more.min(cap));
             self.stationarity = worst(self.stationarity, excess(next, price));
-            first_order = (next - price).max(0.0) * (earning.least - spend).max(0.0);
+            first_order = (next - price).max(0.0) * (best - spend).max(0.0);
         }
         if floor < spend {
             let less = (spend * (1.0 - SPEND_ROUNDING)).max(floor);
             let last = worth.marginal_before(less);
             self.stationarity = worst(self.stationarity, excess(price, last));
-            first_order += (price - last).max(0.0) * (spend - earning.least).max(0.0);
+            first_order += (price - last).max(0.0) * (spend - best).max(0.0);
         }
         // A concave worth gains no more than its slope says. Where that is less than the
         // difference of two large values can tell, it is the better bound.
-        let gain = worth.value(earning.least) - value - price * (earning.least - spend);
-        let gain = gain.max(0.0).min(first_order);
-        self.gap
-            .add(if gain.is_nan() || first_order.is_nan() || price.is_nan() {
-                f64::INFINITY
-            } else {
-                gain
-            });
+        let gain = worth.value(best) - value - price * (best - spend);
+        let unknown = gain.is_nan() || first_order.is_nan() || price.is_nan();
+        self.gap.add(if unknown {
+            f64::INFINITY
+        } else {
+            gain.max(0.0).min(first_order)
+        });
     }
 
     fn join(&mut self, later: Self) {
