@@ -4,6 +4,7 @@
 //! fine that pixel is. Colour never carries a meaning alone: marks differ in shape, lines in
 //! their dashes, and everything is labelled where it stands.
 
+mod amounts;
 mod axis;
 mod canvas;
 mod error;

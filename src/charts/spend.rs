@@ -2,13 +2,14 @@
 
 use plotters::backend::DrawingBackend;
 
+use super::amounts::Amounts;
 use super::axis::{Axis, Magnitude};
 use super::canvas::{Align, Canvas, Mark, Picture};
 use super::palette::{BLUE, PALE, VERMILLION};
 use super::rendering::render;
 use super::wording::{HEADING, PLAIN, SMALL, SUBHEADING, by_planned_spend, heading, money};
 use super::{ChartError, Drawing, PlanView};
-use crate::numeric::figures::{TABLE_DIGITS, figure, fixed, signed};
+use crate::numeric::figures::figure;
 
 const WIDTH: f64 = 1600.0;
 const ROW: f64 = 34.0;
@@ -24,16 +25,6 @@ const MOST_ROWS: usize = 48;
 
 /// Digits of the total.
 const TOTAL_DIGITS: usize = 6;
-
-/// Digits that the greatest amount beside the rows has at least; the others have as many
-/// decimals.
-const AMOUNT_DIGITS: i32 = 5;
-
-/// Amounts from here on are written in billions, so that their column stays narrow.
-const LONG: f64 = 1e10;
-
-/// Greatest amounts outside this range are written in powers of ten.
-const READABLE: std::ops::Range<f64> = 1e-3..1e15;
 
 struct Row {
     name: String,
@@ -51,50 +42,6 @@ struct SpendPicture {
     amounts: Amounts,
     rows: Vec<Row>,
     longest: f64,
-}
-
-/// How the amounts beside the rows are written: with the same decimals, so that they align.
-#[derive(Clone, Copy)]
-struct Amounts {
-    magnitude: Magnitude,
-    /// None for powers of ten.
-    decimals: Option<usize>,
-}
-
-impl Amounts {
-    fn of(longest: f64) -> Self {
-        let magnitude = Magnitude::of(if longest < LONG { 0.0 } else { longest });
-        let greatest = longest / magnitude.unit;
-        let digits = if greatest > 0.0 {
-            greatest.log10().floor() as i32 + 1
-        } else {
-            AMOUNT_DIGITS
-        };
-        let decimals = (longest == 0.0 || READABLE.contains(&longest))
-            .then(|| usize::try_from(AMOUNT_DIGITS - digits).unwrap_or(0));
-        Self {
-            magnitude,
-            decimals,
-        }
-    }
-
-    fn written(&self, amount: f64) -> String {
-        match self.decimals {
-            Some(decimals) if amount.is_finite() => fixed(amount / self.magnitude.unit, decimals),
-            _ => figure(amount, TABLE_DIGITS),
-        }
-    }
-
-    fn change_written(&self, change: f64) -> String {
-        let size = self.written(change.abs());
-        if size == self.written(0.0) {
-            signed(0.0, TABLE_DIGITS)
-        } else if change < 0.0 {
-            format!("−{size}")
-        } else {
-            format!("+{size}")
-        }
-    }
 }
 
 /// Draws what every activity has today and what it would have.
