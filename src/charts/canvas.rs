@@ -245,7 +245,8 @@ impl<DB: DrawingBackend> Canvas<DB> {
             })
     }
 
-    /// The text, shortened with an ellipsis to at most this width.
+    /// The text, shortened to at most this width. The ellipsis stands inside, because names that
+    /// begin alike often differ at their ends.
     pub(super) fn fitted(&self, text: &str, width: f64, written: Type) -> String {
         let text = printable(text);
         if self.width_of(&text, written) <= width {
@@ -253,10 +254,12 @@ impl<DB: DrawingBackend> Canvas<DB> {
         }
         let letters: Vec<char> = text.chars().collect();
         let shortened = |kept: usize| {
-            let start: String = letters[..kept].iter().collect();
-            format!("{}…", start.trim_end())
+            let end = kept * 2 / 5;
+            let start: String = letters[..kept - end].iter().collect();
+            let end: String = letters[letters.len() - end..].iter().collect();
+            format!("{}…{}", start.trim_end(), end.trim_start())
         };
-        // The longest start that fits, by halving.
+        // The most letters that fit, by halving.
         let (mut fits, mut too_long) = (0, letters.len());
         while too_long - fits > 1 {
             let middle = usize::midpoint(fits, too_long);
