@@ -34,7 +34,7 @@ pub(super) fn range_of(panels: &[Panel], price: f64) -> (f64, f64) {
     };
     let steepest = heights().fold(0.0, greater).abs();
     let price = if price.is_finite() { price } else { 0.0 };
-    let least_reach = (REACH * price.abs()).max(typical_height(panels));
+    let least_reach = (REACH * price.abs()).max(typical_height(panels, price));
     let planned = panels.iter().map(|panel| 1.1 * panel.planned.1.abs());
     let reach = planned
         .filter(|height| *height <= OUTLYING * least_reach)
@@ -67,16 +67,18 @@ pub(super) fn greater(most: f64, value: f64) -> f64 {
     }
 }
 
-/// A height that the axis should reach where the price says nothing, because it is zero or far
-/// below most plans' marginal returns: a little above the middle one of the planned points and of
+/// A height that the axis should reach where the price says little: a little above the middle one
+/// of the planned points, which bounds may hold far from the price, and, at a price of zero, of
 /// the curves' middles.
-fn typical_height(panels: &[Panel]) -> f64 {
+fn typical_height(panels: &[Panel], price: f64) -> f64 {
     let mut heights: Vec<f64> = panels
         .iter()
         .flat_map(|panel| {
             let middle = panel.curve.get(panel.curve.len() / 2);
-            [panel.planned.1, middle.map_or(0.0, |point| point.1)]
+            let middle = middle.filter(|_| price == 0.0).map(|point| point.1);
+            [Some(panel.planned.1), middle]
         })
+        .flatten()
         .map(f64::abs)
         .filter(|height| height.is_finite())
         .collect();
@@ -104,6 +106,38 @@ pub(super) fn rate_magnitude(rate: f64) -> Magnitude {
 #[cfg(test)]
 mod tests {
     use super::*;
+    use crate::charts::PlanView;
+    use crate::curves::{Curve, Power, PowerParams};
+    use crate::model::{Activity, Aim, Constraint, Labels, Problem, Solution};
+
+    #[test]
+    fn steep_curves_do_not_press_the_price_to_the_foot() {
+        // From gain / spend² = price: spend = √(gain / price).
+        let (gains, price) = ([10.0, 11.0, 12.0], 0.02);
+        let activities = gains.map(|gain: f64| {
+            let power = PowerParams {
+                gain: -gain,
+                exponent: -1.0,
+            };
+            Activity::new(
+                format!("Stratum {gain}"),
+                Curve::Power(Power::new(power).unwrap()),
+            )
+        });
+        let spends: Vec<f64> = gains.map(|gain| (gain / price).sqrt()).to_vec();
+        let budget = Constraint::budget(spends.iter().sum());
+        let view = PlanView {
+            labels: &Labels::default(),
+            problem: &Problem::new(Aim::Maximise, activities.to_vec(), vec![budget]).unwrap(),
+            solution: &Solution {
+                spends,
+                shadow_prices: vec![price],
+            },
+        };
+        let panels: Vec<Panel> = (0..3).map(|i| Panel::of(&view, i)).collect();
+        let (lowest, highest) = range_of(&panels, price);
+        assert!(lowest == 0.0 && price < highest && highest < 4.0 * price);
+    }
 
     #[test]
     fn rates_are_written_without_many_zeros() {

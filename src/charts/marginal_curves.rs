@@ -29,6 +29,9 @@ const PANEL_FOOT: f64 = 40.0;
 /// Between two panels side by side.
 const GAP: f64 = 34.0;
 
+/// Share of the unit of spend that a panel must reach; below it ticks have too many zeros.
+const LEAST_SHARE: f64 = 0.01;
+
 /// Panels that are drawn at the most.
 const MOST_PANELS: usize = 20;
 
@@ -42,7 +45,9 @@ struct MarginalPicture {
     rate: Magnitude,
     rate_unit: String,
     spend_unit: String,
-    spend: Magnitude,
+    /// The unit of every panel's spends; none where they differ too much for one.
+    spend: Option<Magnitude>,
+    money: String,
     /// Lowest and highest marginal return of the axis.
     range: (f64, f64),
     panels: Vec<Panel>,
@@ -62,8 +67,7 @@ pub fn draw_marginal_curves(view: &PlanView) -> Result<Drawing, ChartError> {
         .all(|panel| panel.price == price)
         .then_some(price);
     let range = range_of(&panels, price);
-    let largest = panels.iter().map(|panel| panel.reach).fold(0.0, f64::max);
-    let spend = Magnitude::of(largest);
+    let spend = shared_magnitude(&panels);
     let rate = rate_magnitude(if price == 0.0 || !price.is_finite() {
         range.1
     } else {
@@ -76,7 +80,15 @@ pub fn draw_marginal_curves(view: &PlanView) -> Result<Drawing, ChartError> {
     } else {
         "marginal return"
     };
+    let whose = if panels.len() < order.len() {
+        "the largest activities"
+    } else {
+        "every activity"
+    };
     let price_label = match shared_price {
+        Some(price) if !price.is_finite() => {
+            format!("shadow price {}", figure(price, TABLE_DIGITS))
+        }
         Some(price) => format!(
             "shadow price {} {unit}",
             figure(price * rate.unit, TABLE_DIGITS)
@@ -90,18 +102,20 @@ pub fn draw_marginal_curves(view: &PlanView) -> Result<Drawing, ChartError> {
         }
     };
     let picture = MarginalPicture {
-        title: heading(view.labels, &format!("{what} of every activity")),
+        title: heading(view.labels, &format!("{what} of {whose}")),
         subtitle: subtitle(order.len(), panels.len()),
         shared_price,
         price_label,
         minimised,
         rate,
         rate_unit: unit,
-        spend_unit: match spend.before(money(view.labels)) {
-            unit if unit.is_empty() => "spend".to_owned(),
-            unit => format!("spend, {unit}"),
+        spend_unit: match spend.map(|spend| spend.before(money(view.labels))) {
+            None => "spend, in the unit under each panel".to_owned(),
+            Some(unit) if unit.is_empty() => "spend".to_owned(),
+            Some(unit) => format!("spend, {unit}"),
         },
         spend,
+        money: money(view.labels).to_owned(),
         range,
         panels,
     };
@@ -114,6 +128,14 @@ pub fn draw_marginal_curves(view: &PlanView) -> Result<Drawing, ChartError> {
         png,
         svg,
     })
+}
+
+/// The unit in which the greatest spends are short, if the least are not long in it.
+fn shared_magnitude(panels: &[Panel]) -> Option<Magnitude> {
+    let reaches = || panels.iter().map(|panel| panel.reach);
+    let magnitude = Magnitude::of(reaches().fold(0.0, f64::max));
+    let plain = magnitude == Magnitude::of(0.0);
+    (plain || reaches().all(|reach| reach >= LEAST_SHARE * magnitude.unit)).then_some(magnitude)
 }
 
 fn subtitle(count: usize, shown: usize) -> String {
@@ -261,11 +283,16 @@ impl MarginalPicture {
         let foot = if up.holds(0.0) { up.at(0.0) } else { below };
         canvas.line(&[(left, foot), (left + width, foot)], GREY, 1.0)?;
         canvas.line(&[(left, below), (left, above)], GREY, 1.0)?;
+        let spend = self.spend.unwrap_or(Magnitude::of(panel.reach));
+        if self.spend.is_none() {
+            let unit = canvas.fitted(&spend.before(&self.money), width, SMALL);
+            canvas.text(&unit, (left + width, below + 36.0), Align::Right, SMALL)?;
+        }
         let mut written_to = f64::NEG_INFINITY;
         for tick in across.ticks(((width / 55.0) as usize).max(1)) {
             let x = across.at(tick);
             canvas.line(&[(x, below), (x, below + 5.0)], GREY, 1.0)?;
-            let label = self.spend.written(tick);
+            let label = spend.written(tick);
             let half = canvas.width_of(&label, SMALL) / 2.0;
             if x - half > written_to + 8.0 && x + half < left + width + GAP / 2.0 {
                 canvas.text(&label, (x, below + 18.0), Align::Centre, SMALL)?;

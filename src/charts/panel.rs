@@ -110,10 +110,6 @@ impl Panel {
         canvas.text(&name, (left, top - 50.0), Align::Left, NAME)?;
         let standing = canvas.fitted(&self.standing, right - left, SMALL);
         canvas.text(&standing, (left, top - 28.0), Align::Left, SMALL)?;
-        if up.holds(self.price) {
-            let y = up.at(self.price);
-            canvas.dashes(&[(left, y), (right, y)], GREEN, 2.0, (14.0, 5.0))?;
-        }
         for (points, evidenced) in self.stretches() {
             for inside in within(&points, up) {
                 let on_canvas: Vec<Point> = inside
@@ -127,6 +123,11 @@ impl Panel {
                     canvas.dashes(&on_canvas, BLUE, 2.5, (5.0, 5.0))?;
                 }
             }
+        }
+        // Over the curve: on a straight one that earns the price, both can be seen.
+        if up.holds(self.price) {
+            let y = up.at(self.price);
+            canvas.dashes(&[(left, y), (right, y)], GREEN, 2.0, (14.0, 5.0))?;
         }
         if let Some(today) = self.today {
             draw_mark(canvas, Mark::Diamond, axes, today, height_written)?;
