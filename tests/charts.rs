@@ -9,6 +9,7 @@ use isomargin::model::{
     Activity, Aim, Constraint, Labels, ObservedRange, Problem, Solution, UsePerUnit,
 };
 use isomargin::solver::solve;
+use plotters::style::{FontStyle, IntoFont};
 
 const NAMES: [&str; 12] = [
     "Dune repair",
@@ -303,6 +304,166 @@ fn no_text_leaves_the_sheet() {
             }
         }
     }
+}
+
+/// A text of a picture and what it covers: left, right, top, bottom.
+struct Written {
+    text: String,
+    covers: [f64; 4],
+}
+
+/// The level texts of a picture, measured with the embedded font, which drawing has registered.
+fn level_texts(svg: &str) -> Vec<Written> {
+    /// The drawing library divides the size of a font by this before it writes it.
+    const EM_SHARE: f64 = 1.24;
+    let elements = svg.split("<text").skip(1).map(|element| {
+        let (tag, rest) = element.split_once('>').unwrap();
+        (tag, rest.split('<').next().unwrap().trim())
+    });
+    elements
+        .filter(|(tag, text)| !tag.contains("rotate(") && !text.is_empty())
+        .map(|(tag, text)| {
+            let text = text.replace("&lt;", "<").replace("&gt;", ">");
+            let [x, y, size] = ["x", "y", "font-size"].map(|name| attribute(tag, name).unwrap());
+            let style = if tag.contains("bold") {
+                FontStyle::Bold
+            } else {
+                FontStyle::Normal
+            };
+            let font = ("sans-serif", EM_SHARE * size, style).into_font();
+            let ((from, _), (to, _)) = font.layout_box(&text).unwrap();
+            let width = f64::from(to - from);
+            let left = match tag {
+                tag if tag.contains("\"end\"") => x - width,
+                tag if tag.contains("\"middle\"") => x - width / 2.0,
+                _ => x,
+            };
+            // Letters without ascenders or descenders are about half as high as the face.
+            let covers = [left, left + width, y - 0.4 * size, y + 0.4 * size];
+            Written { text, covers }
+        })
+        .collect()
+}
+
+/// Logarithmic curves that start at these marginal returns and halve them at these spends.
+fn halving(halves: &[(f64, f64)]) -> Vec<Activity> {
+    let activities = halves.iter().enumerate().map(|(i, &(marginal, scale))| {
+        let given = LogParams {
+            gain: marginal * scale,
+            scale,
+        };
+        Activity {
+            current: Some(0.5 * scale),
+            ..Activity::new(
+                format!("Work {}", i + 1),
+                Curve::Log(Log::new(given).unwrap()),
+            )
+        }
+    });
+    activities.collect()
+}
+
+fn with_budget(activities: Vec<Activity>, budget: f64) -> Problem {
+    Problem::new(Aim::Maximise, activities, vec![Constraint::budget(budget)]).unwrap()
+}
+
+/// Spends from one to ten thousand million.
+fn orders_of_spend() -> Problem {
+    let halves: Vec<(f64, f64)> = (0..6).map(|i| (2.0, 100_f64.powi(i))).collect();
+    with_budget(halving(&halves), 1e10)
+}
+
+#[test]
+fn no_text_covers_another() {
+    let short = [
+        returns(60, 2e6),
+        returns(5, 1e-12),
+        returns(5, 1e3),
+        returns(5, 1e15),
+        slack(),
+        uses(),
+        orders_of_spend(),
+    ];
+    let long = [returns(12, 2e6), costs()];
+    let short = short.into_iter().map(|plan| (plan, labels()));
+    for (problem, labels) in short.chain(long.into_iter().map(|plan| (plan, long_labels()))) {
+        for drawing in drawn(&problem, &labels) {
+            let texts = level_texts(&drawing.svg);
+            for (i, one) in texts.iter().enumerate() {
+                for other in &texts[i + 1..] {
+                    let [left, right, top, bottom] = one.covers;
+                    let [other_left, other_right, other_top, other_bottom] = other.covers;
+                    let apart = right <= other_left
+                        || other_right <= left
+                        || bottom <= other_top
+                        || other_bottom <= top;
+                    assert!(apart, "{:?} and {:?}", one.text, other.text);
+                }
+            }
+        }
+    }
+}
+
+#[test]
+fn names_that_begin_alike_stay_apart() {
+    let mut activities = halving(&[(2.0, 1.0); 12]);
+    for (i, activity) in activities.iter_mut().enumerate() {
+        let name = format!(
+            "Renewal of the pumps along the northern canal, lot {}",
+            i + 1
+        );
+        activity.name = name.into();
+    }
+    for drawing in drawn(&with_budget(activities, 20.0), &labels()) {
+        let texts = level_texts(&drawing.svg);
+        let names = texts
+            .iter()
+            .filter(|written| written.text.starts_with("Renewal"));
+        let mut names: Vec<&str> = names.map(|written| written.text.as_str()).collect();
+        names.sort_unstable();
+        names.dedup();
+        assert_eq!(names.len(), 12, "{names:?}");
+    }
+}
+
+#[test]
+fn panels_whose_spends_differ_much_have_units_of_their_own() {
+    let drawing = drawn(&orders_of_spend(), &labels()).remove(0);
+    let texts = level_texts(&drawing.svg);
+    for unit in ["billion EUR", "million EUR", "thousand EUR", "EUR"] {
+        assert!(texts.iter().any(|written| written.text == unit), "{unit}");
+    }
+    assert!(!texts.iter().any(|written| written.text.contains("e-")));
+}
+
+#[test]
+fn a_picture_that_leaves_activities_out_does_not_claim_them() {
+    let drawing = drawn(&returns(60, 2e6), &labels()).remove(0);
+    assert!(!drawing.title.contains("every activity"));
+    assert!(
+        drawing
+            .svg
+            .contains("the 20 with most spend of 60 activities")
+    );
+}
+
+#[test]
+fn an_infinite_price_is_said_without_a_unit() {
+    let power = PowerParams {
+        gain: 2.0,
+        exponent: 0.5,
+    };
+    let vertical = Activity::new("vertical", Curve::Power(Power::new(power).unwrap()));
+    let nothing = Solution {
+        spends: vec![0.0],
+        shadow_prices: vec![f64::INFINITY],
+    };
+    let drawing = drawn_with(&with_budget(vec![vertical], 0.0), &labels(), &nothing).remove(0);
+    let said = level_texts(&drawing.svg);
+    assert!(
+        said.iter()
+            .any(|written| written.text == "shadow price without end")
+    );
 }
 
 #[test]
