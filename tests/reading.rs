@@ -212,10 +212,13 @@ fn a_plan_without_a_limit_has_no_constraint() {
 // Lenient readings: what leaves no doubt is read and said.
 
 #[test]
-fn a_byte_order_mark_is_passed_over() {
+fn a_byte_order_mark_is_passed_over_and_said() {
+    let marked = of_table(format!("\u{feff}{ONE_ACTIVITY}"));
+    let (plan, said) = marked.split_once("Reading: ").unwrap();
+    assert_eq!(plan, of_table(ONE_ACTIVITY));
     assert_eq!(
-        of_table(format!("\u{feff}{ONE_ACTIVITY}")),
-        of_table(ONE_ACTIVITY)
+        said.trim_end(),
+        "activities.csv: the byte order mark before the text was passed over"
     );
 }
 
@@ -356,6 +359,8 @@ fn a_line_without_end_is_refused_briefly() {
     snapshot!("long_line", of_table(&one_line));
     let bytes = vec![b'x'; 3 << 20];
     snapshot!("long_first_line", of_table(&bytes));
+    let title = "x".repeat(3 << 20);
+    snapshot!("plan_long_line", of_plan(&format!("title = \"{title}\"\n")));
 }
 
 #[test]
@@ -388,6 +393,20 @@ fn an_open_quote_is_refused() {
         "text_behind_a_quote",
         of_table("activity,curve,slope\n\"A\" big,linear,1\n")
     );
+    snapshot!(
+        "space_before_a_quote",
+        of_table("activity,curve,slope\nA,linear,1\n \"B\",linear,1\n")
+    );
+}
+
+#[test]
+fn a_quote_inside_a_cell_is_a_sign_like_others() {
+    let folder = Folder::of([(
+        TABLE,
+        "activity,curve,slope\nPipe of 5\" width,linear,1\n".as_bytes(),
+    )]);
+    let plan = read_plan(&folder.request(TABLE)).unwrap();
+    assert_eq!(plan.problem.activities()[0].name, "Pipe of 5\" width");
 }
 
 // Faults of the header.
@@ -406,6 +425,21 @@ fn a_column_without_a_name_is_refused() {
         "column_without_name",
         of_table("activity,curve,,slope\nA,linear,x,1\n")
     );
+}
+
+#[test]
+fn nothing_of_a_file_reaches_the_terminal_as_a_control() {
+    let turns = "\u{1b}[31m\u{202e}";
+    let header = of_table(format!("activity,curve,slope,{turns}town\nA,linear,1,x\n"));
+    snapshot!("column_unseen", &header);
+    let cells = of_table(format!(
+        "activity,curve,slope,cap\n{turns}A,linear,1,2\nB,{turns},1,2\nC,linear,{turns},2\n"
+    ));
+    let keys = of_plan("\"k\\u001b[31m\" = 1\ntitle = \"\\u202e\"\nperiod = \"a\\nb\"\n");
+    for faults in [header, cells, keys] {
+        assert!(faults.contains("error: "));
+        assert!(!faults.contains(['\u{1b}', '\u{202e}']), "{faults:?}");
+    }
 }
 
 #[test]
@@ -479,7 +513,7 @@ fn rows_without_a_name_and_rows_of_sums_are_refused() {
         "names_at_fault",
         of_table(
             "activity,curve,slope\n,linear,1\n\u{a0},linear,1\nTotal,linear,1\nSum:,,2\n\
-             \"two\nlines\",linear,1\n"
+             \"two\nlines\",linear,1\nDu\u{200b}ne,linear,1\n"
         )
     );
 }
@@ -557,6 +591,14 @@ fn points_of_an_unknown_activity_are_refused() {
         of_tables(
             "activity,curve\nTable,points\n",
             "activity,spend,return\nTable,0,0\nTable,1,1\nTabel,0,0\nTABLE,0,0\n"
+        )
+    );
+    // A row at fault hides no other fault: its own points are not unknown, and the others are.
+    snapshot!(
+        "points_unknown_beside",
+        of_tables(
+            "activity,curve,cap\nTable,points,\nDune,points,x\n",
+            "activity,spend,return\nTable,0,0\nTable,1,1\nDune,0,0\nDune,1,1\nTabel,0,0\n"
         )
     );
 }

@@ -21,6 +21,8 @@ pub(super) struct ActivitiesTable<'a> {
     pub activities: Vec<Activity>,
     /// Where the record of each activity begins.
     pub starts: Vec<usize>,
+    /// Names of the rows at fault, and where their records begin.
+    pub refused: Vec<(CompactString, usize)>,
     pub extra: Vec<ExtraColumn>,
     pub currencies: Currencies,
 }
@@ -90,10 +92,11 @@ impl<'a> ActivitiesTable<'a> {
             columns,
             activities,
             starts,
+            refused,
             extra,
             currencies,
         };
-        if read.activities.is_empty() && refused.is_empty() && faults.is_empty() {
+        if read.activities.is_empty() && read.refused.is_empty() && faults.is_empty() {
             return Err(Diagnostics::of(
                 "a table without rows",
                 read.table.header_row_place(),
@@ -101,7 +104,7 @@ impl<'a> ActivitiesTable<'a> {
                 "add a row for every activity",
             ));
         }
-        read.find_repeated_names(&refused, &mut faults);
+        read.find_repeated_names(&mut faults);
         Ok((read, faults))
     }
 
@@ -117,9 +120,9 @@ impl<'a> ActivitiesTable<'a> {
     }
 
     /// Looks through the names of all rows, the refused ones among them.
-    fn find_repeated_names(&self, refused: &[(CompactString, usize)], faults: &mut Diagnostics) {
+    fn find_repeated_names(&self, faults: &mut Diagnostics) {
         const NAME_TWICE: &str = "a name twice";
-        let read = self.activities.len();
+        let (read, refused) = (self.activities.len(), &self.refused);
         let name = |i: usize| match i.checked_sub(read) {
             Some(i) => refused[i].0.as_str(),
             None => self.activities[i].name.as_str(),

@@ -32,10 +32,13 @@ pub(super) fn decode<'a>(
         return Err(no_text(place, "it holds zero bytes"));
     }
     match std::str::from_utf8(bytes) {
-        Ok(text) => Ok((
-            Cow::Borrowed(text.strip_prefix('\u{feff}').unwrap_or(text)),
-            None,
-        )),
+        Ok(text) => Ok(match text.strip_prefix('\u{feff}') {
+            Some(text) => {
+                let said = format!("{file}: the byte order mark before the text was passed over");
+                (Cow::Borrowed(text), Some(Note::reading(said)))
+            }
+            None => (Cow::Borrowed(text), None),
+        }),
         Err(fault) => {
             let place = || Place::in_bytes(file, bytes, fault.valid_up_to());
             if is_mostly_utf8(bytes) {

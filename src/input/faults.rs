@@ -94,6 +94,11 @@ impl Diagnostics {
         *self.counts.entry(kind).or_default() += 1;
     }
 
+    /// Whether there is a fault of this kind.
+    pub(super) fn has(&self, kind: &str) -> bool {
+        self.counts.contains_key(kind)
+    }
+
     pub(super) fn is_empty(&self) -> bool {
         self.faults.is_empty()
     }

@@ -24,6 +24,7 @@ mod plan_file;
 mod points;
 mod rows;
 mod scale;
+mod soundness;
 mod table;
 
 pub use amount::{Amount, AmountFault, parse_amount};

@@ -7,6 +7,8 @@ use std::hash::{BuildHasher, Hasher};
 use rayon::prelude::*;
 use rustc_hash::{FxBuildHasher, FxHasher};
 
+use super::place::is_unseen;
+
 /// Names of a row that adds up the others.
 const TOTALS: [&str; 8] = [
     "total",
@@ -24,6 +26,14 @@ pub(super) fn trimmed(name: &str) -> &str {
     name.trim_matches(|character: char| {
         character.is_whitespace() || matches!(character, '\u{200b}' | '\u{feff}')
     })
+}
+
+/// Whether a name holds what cannot be seen in it.
+pub(super) fn is_unprintable(name: &str) -> bool {
+    if name.is_ascii() {
+        return name.bytes().any(|byte| byte.is_ascii_control());
+    }
+    name.contains(is_unseen)
 }
 
 /// Whether a row of this name adds up the others.
@@ -151,6 +161,15 @@ mod tests {
             repeated(names.len(), |i| names[i]),
             [(0, 1), (0, 2), (0, 4), (5, 6)]
         );
+    }
+
+    #[test]
+    fn names_with_what_cannot_be_seen_are_told() {
+        let hidden = ["dune\u{200b}s", "\u{202e}enud", "du\u{ad}ne", "two\nlines"];
+        assert!(hidden.into_iter().all(is_unprintable));
+        // A joiner is a letter's part in Persian, and the dash and the space are seen.
+        let seen = ["dunes", "می\u{200c}روم", "dune\u{a0}– south"];
+        assert!(!seen.into_iter().any(is_unprintable));
     }
 
     #[test]

@@ -53,7 +53,7 @@ impl Place {
         Self {
             file: file.to_owned(),
             line: Some(line),
-            column: column.map(str::to_owned),
+            column: column.map(|name| name.chars().map(visible).collect()),
             excerpt: Some(Excerpt::cut(
                 &text[line_start..line_end],
                 start - line_start..end - line_start,
@@ -151,9 +151,24 @@ fn line_ends(bytes: &[u8]) -> usize {
 fn visible(character: char) -> char {
     match character {
         '\t' => ' ',
-        control if control.is_control() => '\u{fffd}',
+        unseen if is_unseen(unseen) => '\u{fffd}',
         other => other,
     }
+}
+
+/// A line's end or another control, an invisible space or hyphen, a mark that turns the direction
+/// of writing. Joiners are left to the scripts that need them.
+pub(super) fn is_unseen(character: char) -> bool {
+    character.is_control()
+        || matches!(
+            character,
+            '\u{ad}'
+                | '\u{200b}'
+                | '\u{2028}'..='\u{202e}'
+                | '\u{2060}'
+                | '\u{2066}'..='\u{2069}'
+                | '\u{feff}'
+        )
 }
 
 fn floor_boundary(text: &str, mut at: usize) -> usize {

@@ -14,6 +14,7 @@ use super::notes::Note;
 use super::place::Place;
 use super::plan_file::{PlanFile, TableFile, read_plan_file};
 use super::points::{PointsState, PointsTable};
+use super::rows::{NAMELESS_ROW, RAGGED_ROW};
 use super::scale::warn_of_scale;
 use crate::model::{Aim, Constraint, Labels, Problem};
 
@@ -120,7 +121,7 @@ pub fn read_plan(request: &PlanRequest) -> Result<Plan, Diagnostics> {
             return Err(faults);
         }
     };
-    let names_are_known = found.is_empty();
+    let names_are_known = !found.has(RAGGED_ROW) && !found.has(NAMELESS_ROW);
     faults.append(found);
     sources.extend(plan.activities.map(|table| Source {
         path: table.path,
@@ -139,7 +140,7 @@ pub fn read_plan(request: &PlanRequest) -> Result<Plan, Diagnostics> {
     if let Some(mut points) = points {
         currencies.append(&points.currencies);
         notes.append(&mut points.table.notes);
-        // Where rows of the activities table were refused, their names are not known.
+        // The name that a ragged row was meant to have is not known.
         if names_are_known {
             refuse_unknown_names(&points, &table, &mut faults);
         }
@@ -230,6 +231,7 @@ fn refuse_unknown_names(points: &PointsTable, table: &ActivitiesTable, faults: &
         .activities
         .iter()
         .map(|activity| activity.name.as_str())
+        .chain(table.refused.iter().map(|(name, _)| name.as_str()))
         .collect();
     let mut unknown: Vec<_> = points
         .curves

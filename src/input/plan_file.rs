@@ -11,7 +11,8 @@ use super::encoding::decode;
 use super::faults::Diagnostics;
 use super::header::nearest;
 use super::notes::Note;
-use super::place::Place;
+use super::place::{Place, is_unseen};
+use super::soundness::check_lines;
 use crate::model::{Aim, Labels};
 
 const KEYS: [&str; 9] = [
@@ -70,6 +71,7 @@ pub(super) fn read_plan_file(
     bytes: &[u8],
 ) -> Result<(PlanFile, Diagnostics), Diagnostics> {
     let (text, decoded) = decode(file, bytes)?;
+    check_lines(file, &text, "plan file", "write one key = value a line")?;
     let table = DeTable::parse(&text).map_err(|fault| {
         let span = fault.span().unwrap_or(0..0);
         Diagnostics::of(
@@ -155,6 +157,11 @@ impl Reader<'_> {
     }
 
     fn refuse_key(&mut self, key: &str, span: Range<usize>) {
+        const UNKNOWN: &str = "an unknown key";
+        if !self.faults.keeps(UNKNOWN) {
+            self.faults.count_one(UNKNOWN);
+            return;
+        }
         let what = format!("a plan file has no key named {key}");
         let mend = if key == "constraints" {
             "this version takes one budget or one requirement".to_owned()
@@ -165,7 +172,7 @@ impl Reader<'_> {
             }
         };
         let place = self.place(span, key);
-        self.faults.add("an unknown key", || place, what, mend);
+        self.faults.add(UNKNOWN, || place, what, mend);
     }
 
     fn text_of(&mut self, key: &str, value: &DeValue, span: Range<usize>) -> Option<String> {
@@ -180,8 +187,8 @@ impl Reader<'_> {
             self.refuse(key, span, what, "fill it in, or delete the line");
             return None;
         }
-        if text.contains(char::is_control) {
-            let what = format!("{key} has a line break or a control character in it");
+        if text.contains(is_unseen) {
+            let what = format!("{key} has a line break or an invisible character in it");
             self.refuse(key, span, what, "write it on one line");
             return None;
         }

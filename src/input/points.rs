@@ -9,7 +9,7 @@ use super::faults::{Diagnostics, FoundFaults, Spot};
 use super::header::{ACTIVITY, missing_columns};
 use super::names::trimmed;
 use super::notes::{Note, Readings};
-use super::rows::{NO_NUMBER, RAGGED_MEND, RAGGED_ROW, ragged};
+use super::rows::{NAMELESS_ROW, NO_NUMBER, RAGGED_MEND, RAGGED_ROW, ragged};
 use super::table::Table;
 use crate::curves::{CurveError, Knot, Points};
 
@@ -185,7 +185,7 @@ impl Rows<'_> {
                 start,
                 column: Some(activity),
             };
-            self.faults.add("a row without a name", spot, || {
+            self.faults.add(NAMELESS_ROW, spot, || {
                 (
                     "this point has no name of an activity".to_owned(),
                     "name the activity in every row, or delete the row".to_owned(),

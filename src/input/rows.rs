@@ -9,7 +9,7 @@ use super::amount;
 use super::digits::DecimalSign;
 use super::faults::{Diagnostics, FoundFaults, Spot};
 use super::header::{Columns, ExtraColumn, nearest};
-use super::names::{is_total, trimmed};
+use super::names::{is_total, is_unprintable, trimmed};
 use super::notes::Readings;
 use super::points::PointsState;
 use super::table::Table;
@@ -20,6 +20,7 @@ use crate::model::{Activity, Field, ObservedRange};
 pub(super) const RAGGED_ROW: &str = "a ragged row";
 pub(super) const RAGGED_MEND: &str =
     "give every row one cell a column; a cell with a separator in it needs quotes";
+pub(super) const NAMELESS_ROW: &str = "a row without a name";
 pub(super) const NO_NUMBER: &str = "a cell that is no number";
 const POINTS_MISSING: &str = "a points curve without points";
 
@@ -146,7 +147,7 @@ impl Part {
         let name = trimmed(&cell);
         let spot = row.spot(Some(row.columns.activity));
         if name.is_empty() {
-            self.faults.add("a row without a name", spot, || {
+            self.faults.add(NAMELESS_ROW, spot, || {
                 (
                     "this row has values and no name of an activity".to_owned(),
                     "name it, or delete the row".to_owned(),
@@ -160,13 +161,14 @@ impl Part {
                         .to_owned(),
                 )
             });
-        } else if name.bytes().any(|byte| byte < b' ') || name.contains(char::is_control) {
-            self.faults.add("a name of several lines", spot, || {
-                (
-                    "this name has a line break or a control character in it".to_owned(),
-                    "write the name on one line".to_owned(),
-                )
-            });
+        } else if is_unprintable(name) {
+            self.faults
+                .add("a name that cannot be seen whole", spot, || {
+                    (
+                        "this name has a line break or an invisible character in it".to_owned(),
+                        "write the name on one line, of characters that can be seen".to_owned(),
+                    )
+                });
         }
         CompactString::from(name)
     }
@@ -209,6 +211,10 @@ impl Part {
             self.readings
                 .count("a family in capital letters or with spaces", &cell);
             return Some(family);
+        }
+        if written.is_empty() && is_total(name) {
+            // The row of sums has been reported, and is to go.
+            return None;
         }
         let spot = row.spot(Some(row.columns.curve));
         self.faults.add("an unknown family", spot, || {

@@ -9,11 +9,10 @@ use super::dialect::Dialect;
 use super::digits::DecimalSign;
 use super::encoding::decode;
 use super::faults::{Diagnostics, Spot};
+use super::names::is_unprintable;
 use super::notes::Note;
 use super::place::{Place, cell_of};
-
-/// Bytes of a line beyond which this is no table of a person's making.
-const LONGEST_LINE: usize = 1 << 20;
+use super::soundness::{check_lines, check_quotes};
 
 /// Bytes of text that one part of a parallel reading holds at the least.
 const PART: usize = 1 << 20;
@@ -53,7 +52,12 @@ impl<'a> Table<'a> {
                 format!("the first row names the columns; \"{key_column}\" is one of them"),
             ));
         }
-        check_lines(file, &text)?;
+        check_lines(
+            file,
+            &text,
+            "table",
+            "save the table as CSV, one row a line",
+        )?;
         let head = after_separator_line(&text);
         if head > 0 {
             let said = format!(
@@ -117,6 +121,13 @@ impl<'a> Table<'a> {
                     || self.place(start, column, Some("no name")),
                     format!("column {} has no name", column + 1),
                     "name it, or delete the column",
+                );
+            } else if is_unprintable(&name) {
+                faults.add(
+                    "a column that cannot be seen whole",
+                    place,
+                    "the name of this column has an invisible character in it",
+                    "write it anew, of characters that can be seen",
                 );
             } else if let Some(earlier) = header.iter().position(|known| *known == name) {
                 faults.add(
@@ -257,68 +268,4 @@ fn after_separator_line(text: &str) -> usize {
         Some(separator) if separator.chars().count() == 1 => end,
         _ => 0,
     }
-}
-
-/// Refuses a line that goes on and on, before a row of it is kept.
-fn check_lines(file: &str, text: &str) -> Result<(), Diagnostics> {
-    let bytes = text.as_bytes();
-    let mut line = 0;
-    while bytes.len() - line > LONGEST_LINE {
-        match memchr::memrchr2(b'\n', b'\r', &bytes[line..line + LONGEST_LINE]) {
-            Some(end) => line += end + 1,
-            None => {
-                let megabytes = LONGEST_LINE >> 20;
-                return Err(Diagnostics::of(
-                    "a line without end",
-                    Place::in_text(file, text, line..line + 1, None),
-                    format!("this line is longer than {megabytes} MB, so this is no table"),
-                    "save the table as CSV, one row a line",
-                ));
-            }
-        }
-    }
-    Ok(())
-}
-
-/// Refuses a quote that is never closed, and text behind a closed one: what a cell holds would
-/// be a guess.
-fn check_quotes(file: &str, text: &str, separator: u8) -> Result<(), Diagnostics> {
-    let bytes = text.as_bytes();
-    let ends_cell = |byte: u8| byte == separator || matches!(byte, b'\n' | b'\r');
-    let mut at = 0;
-    while let Some(found) = memchr::memchr(b'"', &bytes[at..]) {
-        let open = at + found;
-        if open > 0 && !ends_cell(bytes[open - 1]) {
-            at = open + 1;
-            continue;
-        }
-        let mut close = open + 1;
-        loop {
-            match memchr::memchr(b'"', &bytes[close..]) {
-                None => {
-                    return Err(Diagnostics::of(
-                        "an open quote",
-                        Place::in_text(file, text, open..open + 1, None),
-                        "this quote is never closed",
-                        "close it, or delete it",
-                    ));
-                }
-                Some(next) if bytes.get(close + next + 1) == Some(&b'"') => close += next + 2,
-                Some(next) => {
-                    close += next;
-                    break;
-                }
-            }
-        }
-        if bytes.get(close + 1).is_some_and(|&after| !ends_cell(after)) {
-            return Err(Diagnostics::of(
-                "text behind a quote",
-                Place::in_text(file, text, open..close + 2, None),
-                "there is text behind the closing quote of this cell",
-                "put the whole cell in quotes and double the quotes inside it",
-            ));
-        }
-        at = close + 1;
-    }
-    Ok(())
 }
