@@ -37,10 +37,10 @@ pub(super) fn spends_within(
         Sense::AtLeast => bracket.price() == 0.0 && least >= limit,
         Sense::Equal => false,
     };
-    let left = limit - least;
-    if slack_is_best || left <= 0.0 {
+    if slack_is_best {
         return Ok(ranges.into_iter().map(|range| range.least).collect());
     }
+    let left = (limit - least).max(0.0);
     // An uncapped line could take all that is left, and counts as that wide.
     let width = |i: usize| {
         let width = use_per_unit(i) * (ranges[i].greatest - ranges[i].least);
@@ -110,11 +110,17 @@ fn meet_the_limit(problem: &Problem, sense: Sense, limit: f64, spends: &mut [f64
         !at_knot && activity.position(spends[i]) == Position::Between
     };
     let used_by = |i: usize| constraint.use_per_unit(i) * spends[i];
-    let free = (0..spends.len())
+    let larger = |&i: &usize, &j: &usize| used_by(i).total_cmp(&used_by(j)).then(j.cmp(&i));
+    // The largest spend of every block is a candidate; all of them only where none of those is free.
+    let mut candidates: Vec<usize> = (0..spends.len().div_ceil(BLOCK))
         .into_par_iter()
-        .with_min_len(BLOCK)
-        .filter(|&i| movable(i))
-        .max_by(|&i, &j| used_by(i).total_cmp(&used_by(j)).then(j.cmp(&i)));
+        .filter_map(|block| (block * BLOCK..spends.len().min((block + 1) * BLOCK)).max_by(larger))
+        .collect();
+    candidates.sort_unstable_by(|i, j| larger(j, i));
+    let free = candidates
+        .into_iter()
+        .find(|&i| movable(i))
+        .or_else(|| (0..spends.len()).filter(|&i| movable(i)).max_by(larger));
     let Some(free) = free else { return };
     let (floor, cap) = (
         problem.activities()[free].floor,
