@@ -89,6 +89,7 @@ impl Solved {
         let total = problem.total(&solution.spends);
         let certificate = Certificate {
             verdict: Verdict::Proven,
+            total,
             lower_bound: total,
             upper_bound: total,
             gap: 2e-16,

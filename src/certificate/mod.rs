@@ -54,6 +54,8 @@ pub enum CrossCheck {
 pub struct Certificate {
     /// The verdict over all of it.
     pub verdict: Verdict,
+    /// Total of the plan, Σ w_i r_i(x_i) with bases, units of the total.
+    pub total: f64,
     /// Least value that the best total can have, units of the total; −∞ where nothing is known.
     pub lower_bound: f64,
     /// Greatest value that the best total can have; +∞ where nothing is known.
@@ -109,6 +111,7 @@ pub fn certify(problem: &Problem, solution: &Solution, cross_check: CrossCheck) 
         } else {
             Verdict::NotProven
         },
+        total,
         lower_bound,
         upper_bound,
         gap,

@@ -14,6 +14,10 @@ use super::rows::Part;
 use super::table::Table;
 use crate::model::{Activity, Aim, Constraint, Problem};
 
+/// Parts of the text that are read side by side before they are joined: enough for any number of
+/// threads that this is run on, and few enough to stay in a cache.
+const PARTS_A_WAVE: usize = 8;
+
 /// The activities of a plan, and what is needed to point at any of their cells.
 pub(super) struct ActivitiesTable<'a> {
     pub table: Table<'a>,
@@ -40,39 +44,47 @@ impl<'a> ActivitiesTable<'a> {
     ) -> Result<(Self, Diagnostics), Diagnostics> {
         let mut table = Table::open(file, bytes, super::header::ACTIVITY)?;
         let (columns, mut faults) = Columns::of(&table)?;
-        let parts: Vec<Result<Part, Diagnostics>> = table
-            .parts()
-            .into_par_iter()
-            .map(|part| Part::read(&table, &columns, points, part))
-            .collect();
-        let rows = parts
-            .iter()
-            .flatten()
-            .map(|part| part.activities.len())
-            .sum();
+        let parts = table.parts();
         let mut readings = Readings::default();
         let mut refused = Vec::new();
-        let mut activities = Vec::with_capacity(rows);
-        let mut starts = Vec::with_capacity(rows);
+        let mut activities = Vec::new();
+        let mut starts = Vec::new();
         let mut extra: Vec<ExtraColumn> = columns
             .extra
             .iter()
             .map(|&column| ExtraColumn::new(&table.header[column]))
             .collect();
         let (mut capped_at_last_knot, mut empty_rows) = (0, 0);
-        for part in parts {
-            let mut part = part?;
-            activities.append(&mut part.activities);
-            starts.append(&mut part.starts);
-            refused.append(&mut part.refused);
-            for (column, later) in extra.iter_mut().zip(&part.extra) {
-                column.append(later);
+        // A wave of parts at a time, so that their memory is used again while it is warm.
+        for wave in parts.chunks(PARTS_A_WAVE) {
+            let read: Vec<Result<Part, Diagnostics>> = wave
+                .par_iter()
+                .map(|part| Part::read(&table, &columns, points, part.clone()))
+                .collect();
+            if activities.is_empty() {
+                let rows: usize = read
+                    .iter()
+                    .flatten()
+                    .map(|part| part.activities.len())
+                    .sum();
+                let expected = rows * parts.len().div_ceil(wave.len());
+                activities.reserve(expected);
+                starts.reserve(expected);
             }
-            faults.append_found(part.faults, |spot| table.place_of(spot));
-            faults.append(part.points_faults);
-            readings.append(part.readings);
-            empty_rows += part.empty_rows;
-            capped_at_last_knot += part.capped_at_last_knot;
+            for part in read {
+                let mut part = part?;
+                activities.append(&mut part.activities);
+                starts.append(&mut part.starts);
+                refused.append(&mut part.refused);
+                for (column, later) in extra.iter_mut().zip(&part.extra) {
+                    column.append(later);
+                }
+                faults.append_found(part.faults, |spot| table.place_of(spot));
+                faults.append(part.points_faults);
+                readings.append(part.readings);
+                empty_rows += part.empty_rows;
+                capped_at_last_knot += part.capped_at_last_knot;
+            }
         }
         let currencies = readings.currencies.clone();
         table.notes.extend(readings.notes(file));

@@ -147,7 +147,7 @@ impl Summary {
         let problem = findings.problem;
         let exact_total = match findings.rounding {
             Some(rounding) => rounding.exact_total,
-            None => problem.total(&findings.solution.spends),
+            None => findings.certificate.total,
         };
         let total = findings
             .rounding

@@ -153,10 +153,11 @@ pub(super) fn compare_splits(problem: &Problem, plan: Planned) -> Vec<Split> {
 }
 
 fn currents_missing(problem: &Problem) -> usize {
-    let activities = problem.activities().iter();
-    activities
-        .filter(|activity| activity.current.is_none())
-        .count()
+    let activities = problem.activities();
+    let [missing] = block_sums(activities.len(), |i| {
+        [f64::from(u8::from(activities[i].current.is_none()))]
+    });
+    missing as usize
 }
 
 fn current_of(problem: &Problem, i: usize) -> f64 {
@@ -220,12 +221,17 @@ fn factor_that_meets(target: f64, used: impl Fn(f64) -> f64) -> Option<f64> {
 
 fn used_by(problem: &Problem, constraint: &Constraint, spend: impl Fn(usize) -> f64 + Sync) -> f64 {
     let [used] = block_sums(problem.activities().len(), |i| {
-        [match spend(i) {
-            0.0 => 0.0,
-            spend => constraint.use_per_unit(i) * spend,
-        }]
+        [use_of(constraint, i, spend(i))]
     });
     used
+}
+
+/// Use of a spend; no spend uses nothing.
+fn use_of(constraint: &Constraint, i: usize, spend: f64) -> f64 {
+    match spend {
+        0.0 => 0.0,
+        spend => constraint.use_per_unit(i) * spend,
+    }
 }
 
 fn value_split(
@@ -234,7 +240,8 @@ fn value_split(
     spend: impl Fn(usize) -> f64 + Sync,
 ) -> Result<SplitOutcome, NoSplit> {
     let activities = problem.activities();
-    let [total, outside] = block_sums(activities.len(), |i| {
+    let constraint = problem.constraints().first();
+    let [total, outside, used] = block_sums(activities.len(), |i| {
         let activity = &activities[i];
         let spend = spend(i);
         let worth = match activity.weight {
@@ -242,13 +249,12 @@ fn value_split(
             weight => weight * problem.return_at(i, spend),
         };
         let outside = spend < activity.floor || activity.cap < spend;
-        [worth, f64::from(u8::from(outside))]
+        let used = constraint.map_or(0.0, |constraint| use_of(constraint, i, spend));
+        [worth, f64::from(u8::from(outside)), used]
     });
     if !total.is_finite() {
         return Err(NoSplit::NoFiniteTotal);
     }
-    let constraint = problem.constraints().first();
-    let used = constraint.map_or(0.0, |constraint| used_by(problem, constraint, &spend));
     let gain = match problem.aim() {
         _ if (plan.total - total).abs() <= SAME_TOTAL * plan.total.abs().max(total.abs()) => 0.0,
         Aim::Maximise => plan.total - total,
