@@ -13,12 +13,16 @@ pub struct Knot {
     pub value: f64,
 }
 
-/// Straight lines through knots, defined from the first to the last of them. A knot's marginal
-/// return is an interval: the slope after it up to the slope before it.
+/// Straight lines through knots, defined from the first to the last of them. The marginal return
+/// of a knot at which the curve bends is an interval: the slope after it up to the slope before
+/// it. Knots that lie on one line, but for rounding, belong to one piece with one slope: were it
+/// to rise by a rounding, a price between would take the end of the line and not its beginning.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Points {
     /// Two or more, spends strictly rising.
     knots: Arc<[Knot]>,
+    /// One or more, each beginning where the one before it ends, no two neighbours of one slope.
+    pieces: Arc<[Piece]>,
     factor: f64,
 }
 
@@ -59,8 +63,10 @@ impl Points {
                 spend: given[pair[1]].spend,
             });
         }
+        let knots: Arc<[Knot]> = order.into_iter().map(|row| given[row]).collect();
         Ok(Self {
-            knots: order.into_iter().map(|row| given[row]).collect(),
+            pieces: straight_pieces(&knots),
+            knots,
             factor: 1.0,
         })
     }
@@ -73,9 +79,9 @@ impl Points {
         })
     }
 
-    /// The straight pieces, in the order of spend.
+    /// The straight pieces, in the order of spend; neighbours differ in slope.
     pub fn pieces(&self) -> impl ExactSizeIterator<Item = Piece> + '_ {
-        (1..self.knots.len()).map(|end| self.piece(end))
+        (0..self.pieces.len()).map(|at| self.piece(at))
     }
 
     /// Spend of the first knot, where the curve begins.
@@ -91,41 +97,38 @@ impl Points {
     /// Spend of the first knot strictly between `floor` and `cap` at which the curve bends that
     /// way ([`Shape::Concave`] or [`Shape::Convex`]).
     pub fn bend_within(&self, floor: f64, cap: f64, shape: Shape) -> Option<f64> {
-        (1..self.knots.len() - 1)
-            .filter(|&knot| floor < self.knots[knot].spend && self.knots[knot].spend < cap)
-            .find(|&knot| {
-                shape_of_bend(self.piece(knot).slope, self.piece(knot + 1).slope) == shape
-            })
-            .map(|knot| self.knots[knot].spend)
+        (1..self.pieces.len())
+            .filter(|&at| floor < self.pieces[at].from && self.pieces[at].from < cap)
+            .find(|&at| shape_of_bend(self.piece(at - 1).slope, self.piece(at).slope) == shape)
+            .map(|at| self.pieces[at].from)
     }
 
     pub(super) fn scaled(&self, factor: f64) -> Self {
         Self {
             knots: Arc::clone(&self.knots),
+            pieces: Arc::clone(&self.pieces),
             factor: self.factor * factor,
         }
     }
 
-    /// The piece that ends at knot `end` ≥ 1.
-    fn piece(&self, end: usize) -> Piece {
-        let (from, to) = (self.knots[end - 1], self.knots[end]);
+    fn piece(&self, at: usize) -> Piece {
+        let piece = self.pieces[at];
         Piece {
-            from: from.spend,
-            to: to.spend,
-            slope: (to.value - from.value) / (to.spend - from.spend) * self.factor,
+            slope: piece.slope * self.factor,
+            ..piece
         }
     }
 
-    /// The piece that holds `spend`: at a knot the one after it, beyond the ends the outermost.
+    /// The piece that holds `spend`: at a bend the one after it, beyond the ends the outermost.
     fn piece_from(&self, spend: f64) -> Piece {
-        let after = self.knots.partition_point(|knot| knot.spend <= spend);
-        self.piece(after.clamp(1, self.knots.len() - 1))
+        let after = self.pieces.partition_point(|piece| piece.to <= spend);
+        self.piece(after.min(self.pieces.len() - 1))
     }
 
-    /// The piece that holds `spend`: at a knot the one before it.
+    /// The piece that holds `spend`: at a bend the one before it.
     fn piece_up_to(&self, spend: f64) -> Piece {
-        let before = self.knots.partition_point(|knot| knot.spend < spend);
-        self.piece(before.clamp(1, self.knots.len() - 1))
+        let before = self.pieces.partition_point(|piece| piece.to < spend);
+        self.piece(before.min(self.pieces.len() - 1))
     }
 }
 
@@ -133,8 +136,9 @@ impl ReturnCurve for Points {
     /// Linear interpolation; the outermost pieces continued beyond the ends.
     fn value(&self, spend: f64) -> f64 {
         let after = self.knots.partition_point(|knot| knot.spend <= spend);
-        let start = self.knots[after.clamp(1, self.knots.len() - 1) - 1];
-        start.value * self.factor + (spend - start.spend) * self.piece_from(spend).slope
+        let end = after.clamp(1, self.knots.len() - 1);
+        let (start, end) = (self.knots[end - 1], self.knots[end]);
+        (start.value + (spend - start.spend) * slope_between(start, end)) * self.factor
     }
 
     /// Slope of the piece after `spend`.
@@ -149,7 +153,7 @@ impl ReturnCurve for Points {
 
     /// The last slope, as if the last piece went on.
     fn marginal_at_infinity(&self) -> f64 {
-        self.piece(self.knots.len() - 1).slope
+        self.piece(self.pieces.len() - 1).slope
     }
 
     /// From the end of the last steeper piece to the end of the last piece that is not less
@@ -186,12 +190,49 @@ impl ReturnCurve for Points {
 /// to 12 digits of a straight line must not count as bent.
 const SAME_SLOPE: f64 = 1e-11;
 
+fn slope_between(from: Knot, to: Knot) -> f64 {
+    (to.value - from.value) / (to.spend - from.spend)
+}
+
+/// By how much a slope may be off because its knots are rounded.
+fn rounding_of_slope(from: Knot, to: Knot) -> f64 {
+    let width = to.spend - from.spend;
+    let slope = slope_between(from, to).abs();
+    let of_knots = from.value.abs() + to.value.abs() + slope * (from.spend + to.spend);
+    SAME_SLOPE * slope + f64::EPSILON * of_knots / width
+}
+
+/// The longest pieces whose knots lie on one line but for rounding, each with the slope between
+/// its ends.
+fn straight_pieces(knots: &[Knot]) -> Arc<[Piece]> {
+    let mut runs: Vec<(Knot, Knot)> = Vec::with_capacity(knots.len() - 1);
+    for pair in knots.windows(2) {
+        let mut run = (pair[0], pair[1]);
+        while let Some(&(from, to)) = runs.last() {
+            let bend = (slope_between(from, to) - slope_between(run.0, run.1)).abs();
+            if bend > rounding_of_slope(from, to).max(rounding_of_slope(run.0, run.1)) {
+                break;
+            }
+            runs.pop();
+            run = (from, run.1);
+        }
+        runs.push(run);
+    }
+    runs.into_iter()
+        .map(|(from, to)| Piece {
+            from: from.spend,
+            to: to.spend,
+            slope: slope_between(from, to),
+        })
+        .collect()
+}
+
 fn shape_of_bend(before: f64, after: f64) -> Shape {
-    if (before - after).abs() <= SAME_SLOPE * before.abs().max(after.abs()) {
-        Shape::Straight
-    } else if after < before {
+    if after < before {
         Shape::Concave
-    } else {
+    } else if after > before {
         Shape::Convex
+    } else {
+        Shape::Straight
     }
 }
