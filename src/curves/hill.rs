@@ -120,7 +120,8 @@ impl ReturnCurve for Hill {
         if k > 1.0 && marginal >= self.marginal(turning) {
             return SpendRange::at(turning);
         }
-        let wanted = (marginal * scale / (ceiling * k)).ln();
+        // In logarithms, since the smallest prices divided by a steep curve would be zero.
+        let wanted = marginal.ln() - (ceiling * k / scale).ln();
         let bend = 1.0 - 1.0 / k;
         // For large v the right side is −(1 + 1/k)·v from above: a start on the far side.
         let mut level = if k > 1.0 {

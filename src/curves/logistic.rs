@@ -86,12 +86,15 @@ impl ReturnCurve for Logistic {
         if marginal < 0.0 {
             return SpendRange::at(f64::INFINITY);
         }
-        let share = marginal.max(SMALLEST_MARGINAL) / steepest;
+        let marginal_told = marginal.max(SMALLEST_MARGINAL);
+        let share = marginal_told / steepest;
         if share >= 0.25 {
             return SpendRange::at(self.0.midpoint);
         }
         let root = (1.0 - 4.0 * share).sqrt();
-        let least = self.0.midpoint + self.0.scale * (2.0 * ((1.0 + root) / 2.0).ln() - share.ln());
+        // Not the logarithm of the share, which is zero where the curve is steep.
+        let log_share = marginal_told.ln() - steepest.ln();
+        let least = self.0.midpoint + self.0.scale * (2.0 * ((1.0 + root) / 2.0).ln() - log_share);
         let greatest = if marginal == 0.0 {
             f64::INFINITY
         } else {
