@@ -3,7 +3,8 @@
 use std::fmt;
 
 use super::{Activity, Aim};
-use crate::curves::{Curve, Family, Shape};
+use crate::curves::{Curve, Family, ReturnCurve, Shape};
+use crate::numeric::figures;
 
 /// A number of an activity, named as its column.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Hash)]
@@ -148,8 +149,8 @@ pub struct Misshapen {
     pub shape: Shape,
     /// Spend of the knot at which a tabulated curve first bends the wrong way.
     pub knot: Option<f64>,
-    /// Greatest spend of the activity; a floor at the turning point helps only below it.
-    cap: f64,
+    /// Spend from which on an S-shape bends the right way, where the cap leaves room above it.
+    turning_floor: Option<f64>,
 }
 
 impl Misshapen {
@@ -162,13 +163,19 @@ impl Misshapen {
             Curve::Points(points) => points.bend_within(activity.floor, activity.cap, wrong),
             _ => None,
         };
+        let turning_floor = match shape {
+            Shape::TurnsAt(turning) if turning < activity.cap => {
+                Some(turning).filter(|&floor| activity.curve.shape(floor, activity.cap) != wrong)
+            }
+            _ => None,
+        };
         Self {
             activity: i,
             aim,
             family: activity.curve.family(),
             shape,
             knot,
-            cap: activity.cap,
+            turning_floor,
         }
     }
 
@@ -184,9 +191,10 @@ impl Misshapen {
                  give {further} than the last"
             ),
             (Shape::TurnsAt(turning), _) => format!(
-                "this {} curve is S-shaped: it bends one way up to a spend of {turning:.6} and the \
-                 other way beyond it",
-                self.family
+                "this {} curve is S-shaped: it bends one way up to a spend of {} and the other \
+                 way beyond it",
+                self.family,
+                just_above(turning)
             ),
             _ => format!(
                 "this {} curve is not {needed} between its bounds: every further unit gives \
@@ -198,43 +206,70 @@ impl Misshapen {
 
     /// What would help, in words.
     pub fn mend(&self) -> String {
-        match (self.aim, self.family, self.shape) {
-            (Aim::Maximise, _, Shape::TurnsAt(turning)) if turning < self.cap => format!(
-                "give it a floor of at least {turning:.6}, or fit a curve with falling marginal \
-                 return"
-            ),
-            (_, Family::Power, _) if self.aim == Aim::Maximise => {
+        if let Some(floor) = self.turning_floor {
+            let fitting = match self.aim {
+                Aim::Maximise => "falling marginal return",
+                Aim::Minimise => "rising marginal cost",
+            };
+            return format!(
+                "give it a floor of at least {}, or fit a curve with {fitting}",
+                just_above(floor)
+            );
+        }
+        match (self.aim, self.family) {
+            (Aim::Maximise, Family::Power) => {
                 "a return needs an exponent between 0 and 1 with a positive gain, or below 0 with \
                  a negative gain"
                     .to_owned()
             }
-            (_, Family::Power, _) => {
+            (Aim::Minimise, Family::Power) => {
                 "a cost needs an exponent above 1 or below 0 with a positive gain".to_owned()
             }
-            (Aim::Maximise, Family::Quadratic, _) => {
+            (Aim::Maximise, Family::Quadratic) => {
                 "a return needs a curvature of at most 0".to_owned()
             }
-            (Aim::Minimise, Family::Quadratic, _) => {
+            (Aim::Minimise, Family::Quadratic) => {
                 "a cost needs a curvature of at least 0".to_owned()
             }
-            (Aim::Maximise, Family::Points, _) => {
+            (Aim::Maximise, Family::Points) => {
                 "smooth the table so that every further unit gives no more than the one before, \
                  or cap the activity below that spend"
                     .to_owned()
             }
-            (Aim::Minimise, Family::Points, _) => {
+            (Aim::Minimise, Family::Points) => {
                 "smooth the table so that every further unit costs no less than the one before, \
                  or cap the activity below that spend"
                     .to_owned()
             }
-            (Aim::Maximise, _, _) => {
+            (Aim::Maximise, _) => {
                 "check the sign of its parameters, or set aim = \"minimise\" if it is a cost"
                     .to_owned()
             }
-            (Aim::Minimise, _, _) => {
+            (Aim::Minimise, _) => {
                 "check the sign of its parameters, or set aim = \"maximise\" if it is a return"
                     .to_owned()
             }
         }
+    }
+}
+
+/// A spend to six digits, rounded up so that it is a floor that works.
+fn just_above(spend: f64) -> String {
+    let decimals = figures::decimals_for(spend, 6);
+    let nearest = format!("{spend:.decimals$}");
+    let rounded = match nearest.parse::<f64>() {
+        Ok(below) if below < spend => {
+            let step = 10_f64.powi(-i32::try_from(decimals).unwrap_or(i32::MAX));
+            format!("{:.decimals$}", below + step)
+        }
+        _ => nearest,
+    };
+    if rounded.contains('.') {
+        rounded
+            .trim_end_matches('0')
+            .trim_end_matches('.')
+            .to_owned()
+    } else {
+        rounded
     }
 }
