@@ -81,9 +81,11 @@ impl Residuals {
             let used = problem.used(k, &solution.spends);
             let size = size_of_use(constraint, used, &solution.spends);
             whole.primal = worst(whole.primal, violation(constraint, used, size));
-            let price_of_slack = match constraint.slack(used) {
-                0.0 => 0.0,
-                slack => price * slack,
+            // Where only floors that fill the limit leave nothing, a price may be infinite.
+            let price_of_slack = if constraint.is_filled_by(used) {
+                0.0
+            } else {
+                price * constraint.slack(used)
             };
             complementarity = worst(complementarity, price_of_slack.abs());
             whole.gap.add(if has_right_sign(constraint.sense, price) {

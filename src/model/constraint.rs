@@ -83,8 +83,18 @@ impl Constraint {
     pub fn is_binding(&self, used: f64) -> bool {
         self.slack(used).abs() <= BINDING * self.limit.abs().max(used.abs())
     }
+
+    /// Whether `used` is the limit but for the rounding of decimal numbers to binary ones, as the
+    /// sum of floors may be that was made to fill it.
+    pub fn is_filled_by(&self, used: f64) -> bool {
+        self.slack(used).abs() <= SAME_USE * self.limit.abs()
+    }
 }
 
 /// Relative slack up to which a constraint binds: a few roundings of a sum, far below the
 /// smallest coin of any budget.
 const BINDING: f64 = 1e-14;
+
+/// Relative difference up to which a use and a limit are the same number: the roundings of the
+/// spends, of what a unit uses, of their products, of the sum and of the limit.
+const SAME_USE: f64 = 3.0 * f64::EPSILON;

@@ -278,6 +278,9 @@ fn no_plan(reading: &Reading) -> Option<NoPlan> {
             let ends = [used(activities[i].floor), used(activities[i].cap)];
             [ends[0].min(ends[1]), ends[0].max(ends[1])]
         });
+        if constraint.is_filled_by(least) || constraint.is_filled_by(greatest) {
+            return None;
+        }
         let short = constraint.limit < least && constraint.sense != Sense::AtLeast
             || constraint.limit > greatest && constraint.sense != Sense::AtMost;
         short.then(|| NoPlan::new(reading.labels, problem, k, least, greatest))

@@ -39,11 +39,16 @@ pub fn solve(problem: &Problem) -> Result<Solution, SolveError> {
 /// [`SolveError`] where no best plan exists.
 pub fn solve_from(problem: &Problem, demand: &Demand) -> Result<Solution, SolveError> {
     let constraint = &problem.constraints()[0];
-    let (limit, sense) = (constraint.limit, constraint.sense);
+    let sense = constraint.sense;
     let UseRange {
         least: least_use,
         greatest: greatest_use,
     } = demand.of_bounds();
+    // Floors of 0.1 and 0.2 fill a budget of 0.3, although in binary numbers they exceed it.
+    let limit = [least_use, greatest_use]
+        .into_iter()
+        .find(|&bounds| constraint.is_filled_by(bounds))
+        .unwrap_or(constraint.limit);
     let too_low = limit < least_use && sense != Sense::AtLeast;
     let too_high = limit > greatest_use && sense != Sense::AtMost;
     if too_low || too_high {
