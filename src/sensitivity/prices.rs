@@ -194,7 +194,11 @@ impl Margin {
         }
         if self.straight {
             let at_price = demand.at(found);
-            return [finite(at_price.least), finite(at_price.greatest)];
+            // A curve so flat that its bend is no number asks for one spend, not for its own.
+            return [
+                finite(at_price.least.min(limit)),
+                finite(at_price.greatest.max(limit)),
+            ];
         }
         let (mut below, mut endless) = self.event_below;
         let mut above = self.event_above;
