@@ -2,8 +2,9 @@
 
 use isomargin::certificate::{CrossCheck, Verdict, certify};
 use isomargin::curves::{
-    Curve, Exponential, ExponentialParams, Knot, Linear, LinearParams, Log, LogParams, Points,
-    Power, PowerParams, Quadratic, QuadraticParams, ReturnCurve,
+    Curve, Exponential, ExponentialParams, Hill, HillParams, Knot, Linear, LinearParams, Log,
+    LogParams, Logistic, LogisticParams, Points, Power, PowerParams, Quadratic, QuadraticParams,
+    ReturnCurve,
 };
 use isomargin::model::{Activity, Aim, Constraint, Problem, Sense, Solution};
 use isomargin::solver::{SolveError, solve};
@@ -187,6 +188,126 @@ fn a_budget_that_ends_on_a_knot_leaves_the_spend_on_it() {
         let (_, solution) = answered(Aim::Maximise, vec![table.clone()], budget(limit));
         assert_eq!(solution.spends, [limit]);
     }
+}
+
+#[test]
+fn a_straight_table_spends_no_more_than_the_budget() {
+    // Rounding makes some slopes of such a table rise.
+    let knots: Vec<Knot> = (0..=10)
+        .map(|i| Knot {
+            spend: f64::from(i) / 10.0,
+            value: f64::from(3 * i) / 10.0,
+        })
+        .collect();
+    let curve = Points::new(&knots).unwrap();
+    let table = Activity {
+        cap: 1.0,
+        ..Activity::new("table", Curve::Points(curve))
+    };
+    for limit in [0.05, 0.25, 0.3, 0.7, 0.99] {
+        let rival = Activity {
+            floor: 0.0,
+            ..linear(2.0, 5.0)
+        };
+        let (_, solution) = answered(Aim::Maximise, vec![table.clone(), rival], budget(limit));
+        assert_eq!(solution.spends, [limit, 0.0]);
+        assert!((solution.shadow_prices[0] - 3.0).abs() < 1e-14);
+    }
+}
+
+#[test]
+fn decimal_bounds_that_add_up_to_the_limit_leave_everyone_at_a_bound() {
+    // 0.1 + 0.2 exceeds 0.3 in binary numbers, and 0.1 + 0.7 falls short of 0.8.
+    let mut random = ChaCha8Rng::seed_from_u64(8);
+    let cents = |cents: i32| f64::from(cents) / 100.0;
+    let mut inexact = 0;
+    for round in 0..600 {
+        let floors: Vec<i32> = (0..random.random_range(2..9))
+            .map(|_| random.random_range(1..100_000))
+            .collect();
+        let limit = cents(floors.iter().sum());
+        let sum: f64 = floors.iter().map(|&floor| cents(floor)).sum();
+        inexact += usize::from(sum != limit);
+        let sense = [Sense::AtMost, Sense::Equal][round % 2];
+        let mut activities: Vec<Activity> = floors
+            .iter()
+            .map(|&floor| Activity {
+                floor: cents(floor),
+                ..log(2.0, 1.0)
+            })
+            .collect();
+        if round % 3 == 0 {
+            let steep = PowerParams {
+                gain: 1.0,
+                exponent: 0.5,
+            };
+            let curve = Curve::Power(Power::new(steep).unwrap());
+            activities.push(Activity::new("steep", curve));
+        }
+        let floors: Vec<f64> = activities.iter().map(|activity| activity.floor).collect();
+        let constraint = Constraint {
+            sense,
+            ..budget(limit)
+        };
+        let (_, solution) = answered(Aim::Maximise, activities, constraint);
+        assert_eq!(solution.spends, floors);
+
+        let caps: Vec<f64> = floors.into_iter().filter(|&cap| cap > 0.0).collect();
+        for (aim, sense, sign) in [
+            (Aim::Maximise, Sense::AtMost, -1.0),
+            (Aim::Maximise, Sense::Equal, -1.0),
+            (Aim::Minimise, Sense::AtLeast, 1.0),
+        ] {
+            let capped = caps.iter().map(|&cap| Activity {
+                cap,
+                ..quadratic(3000.0, sign)
+            });
+            let constraint = Constraint {
+                sense,
+                ..budget(limit)
+            };
+            let (_, solution) = answered(aim, capped.collect(), constraint);
+            assert_eq!(solution.spends, caps);
+        }
+    }
+    assert!(inexact > 60, "{inexact}");
+}
+
+#[test]
+fn a_saturated_curve_takes_what_others_need_not() {
+    // The equation leaves the logistic a spend at which its next unit earns nothing that can be
+    // told from zero; at that price the hill takes all that its cap allows, 90 % of its ceiling.
+    let hill = HillParams {
+        ceiling: 100.0,
+        scale: 1.0,
+        steepness: 2.0,
+    };
+    let logistic = LogisticParams {
+        ceiling: 1.0,
+        scale: 0.01,
+        midpoint: 0.0,
+    };
+    let activities = vec![
+        Activity {
+            floor: 1.0,
+            cap: 3.0,
+            ..Activity::new("hill", Curve::Hill(Hill::new(hill).unwrap()))
+        },
+        Activity::new(
+            "logistic",
+            Curve::Logistic(Logistic::new(logistic).unwrap()),
+        ),
+    ];
+    let (plan, solution) = answered(
+        Aim::Maximise,
+        activities,
+        Constraint {
+            sense: Sense::Equal,
+            ..budget(1000.0)
+        },
+    );
+    assert_eq!(solution.spends, [3.0, 997.0]);
+    assert!((plan.total(&solution.spends) - 90.5).abs() < 1e-12);
 }
 
 #[test]

@@ -75,6 +75,37 @@ fn concave() -> impl Strategy<Value = Curve> {
     ]
 }
 
+/// S-shaped curves of both families, and the spend from which on each is concave.
+fn s_shaped() -> impl Strategy<Value = Curve> {
+    let size = any_size;
+    prop_oneof![
+        (size(), size(), 1.01..8.0_f64).prop_map(|(ceiling, scale, steepness)| {
+            let given = HillParams {
+                ceiling,
+                scale,
+                steepness,
+            };
+            Curve::Hill(Hill::new(given).unwrap())
+        }),
+        (size(), size(), -4.0..4.0_f64).prop_map(|(ceiling, scale, place)| {
+            let given = LogisticParams {
+                ceiling,
+                scale,
+                midpoint: place * scale,
+            };
+            Curve::Logistic(Logistic::new(given).unwrap())
+        }),
+    ]
+}
+
+/// Where the concave stretch of a curve begins.
+fn concave_from(curve: &Curve) -> f64 {
+    match curve.shape(0.0, f64::INFINITY) {
+        Shape::TurnsAt(turning) => turning,
+        _ => 0.0,
+    }
+}
+
 /// The spend over which a curve bends: where to look at it.
 fn reach_of(curve: &Curve) -> f64 {
     match curve {
@@ -116,6 +147,66 @@ fn curvatures_are_the_slopes_of_marginals() {
             (slope - curve.curvature(spend)).abs() <= 1e-5 * scale,
             "{slope}"
         );
+        Ok(())
+    });
+}
+
+#[test]
+fn s_curves_have_the_slopes_and_bends_that_they_say() {
+    always(s_shaped(), |curve, share| {
+        let spend = reach_of(curve) * (0.05 + 3.0 * share);
+        let step = 1e-4 * spend;
+        let slope_of = |height: &dyn Fn(f64) -> f64| {
+            (height(spend + step) - height(spend - step)) / (2.0 * step)
+        };
+        let (marginal, curvature) = (curve.marginal(spend), curve.curvature(spend));
+        let slope = slope_of(&|spend| curve.value(spend));
+        let noise = 1e-10 * curve.value(spend).abs() / spend;
+        prop_assert!(
+            (slope - marginal).abs() <= 1e-5 * marginal + noise,
+            "{slope}"
+        );
+        let bend = slope_of(&|spend| curve.marginal(spend));
+        // Near the turning point the curvature is small beside its own change.
+        let noise = 1e-4 * marginal / spend;
+        prop_assert!(
+            (bend - curvature).abs() <= 1e-4 * curvature.abs() + noise,
+            "{bend}"
+        );
+        let turning = concave_from(curve);
+        prop_assert_eq!(spend < turning, curvature > 0.0);
+        Ok(())
+    });
+}
+
+#[test]
+fn s_curves_are_inverted_back_to_spends_above_the_turning_point() {
+    always(s_shaped(), |curve, share| {
+        let spend = concave_from(curve) + reach_of(curve) * (0.2 + 3.0 * share);
+        let price = curve.marginal(spend);
+        let back = curve.inverse_marginal(price).least;
+        let room = 1e-11 * (spend + (price / curve.curvature(spend)).abs());
+        prop_assert!((back - spend).abs() <= room, "{back} {spend}");
+        Ok(())
+    });
+}
+
+#[test]
+fn a_lower_price_never_asks_for_less() {
+    // Down to the smallest number there is: 5e-324.
+    always(prop_oneof![concave(), s_shaped()], |curve, share| {
+        let prices = (-323..=250)
+            .rev()
+            .map(|power| 10_f64.powf(f64::from(power)) * (1.0 + share));
+        let mut asked = concave_from(curve);
+        for price in prices.chain([5e-324]) {
+            let spend = curve.inverse_marginal(price).least;
+            prop_assert!(
+                !spend.is_nan() && spend >= asked * (1.0 - 1e-12),
+                "{price} {spend}"
+            );
+            asked = spend;
+        }
         Ok(())
     });
 }
@@ -340,6 +431,31 @@ fn a_table_printed_to_twelve_digits_of_a_line_counts_as_straight() {
 }
 
 #[test]
+fn knots_on_one_line_belong_to_one_piece() {
+    // In binary numbers the slopes of such tables differ in the last places, and rise at some
+    // knots: a price between them must not take the end of the line without its beginning.
+    for (step, start, rise) in [(0.1, 0.0, 0.3), (0.01, 0.0, 0.07), (1.0, 12_345_678.0, 0.1)] {
+        let knots: Vec<Knot> = (0..=12)
+            .map(|i| Knot {
+                spend: f64::from(i) * step,
+                value: start + f64::from(i) * rise,
+            })
+            .collect();
+        let points = Points::new(&knots).unwrap();
+        assert_eq!(points.pieces().len(), 1, "{step}");
+        assert_eq!(points.knots().len(), 13);
+        let slope = points.marginal(0.0);
+        assert!((slope / (rise / step) - 1.0).abs() < 1e-8);
+        assert_eq!(points.marginal_before(5.0 * step), slope);
+        let range = points.inverse_marginal(slope);
+        assert_eq!((range.least, range.greatest), (0.0, points.last_spend()));
+        for knot in &knots {
+            assert_eq!(points.value(knot.spend), knot.value);
+        }
+    }
+}
+
+#[test]
 fn a_line_asks_for_all_or_nothing() {
     let line = Linear::new(LinearParams { slope: 2.0 }).unwrap();
     let asked = |price: f64| {
@@ -532,4 +648,28 @@ fn curves_of_the_wrong_shape_are_refused_with_the_reason_and_a_mend() {
     assert_eq!(refusal(max, 0.0, 1.0, rising()), None);
     assert_eq!(refusal(min, 0.0, 2.0, rising()), None);
     assert_eq!(refusal(min, 0.0, any, power(1.0, -1.0)), None);
+}
+
+#[test]
+fn the_floor_that_a_refusal_names_is_accepted() {
+    let mends = |curve: &Curve| refusal(Aim::Maximise, 0.0, f64::INFINITY, curve.clone());
+    always(s_shaped(), |curve, _| {
+        let Some(said) = mends(curve) else {
+            return Ok(()); // its midpoint is below zero
+        };
+        let (_, rest) = said.split_once("floor of at least ").unwrap();
+        let floor: f64 = rest.split(',').next().unwrap().parse().unwrap();
+        prop_assert!(floor <= concave_from(curve) * 1.00001, "{said}");
+        prop_assert_eq!(
+            refusal(Aim::Maximise, floor, f64::INFINITY, curve.clone()),
+            None
+        );
+        // Turned upside down it is a falling return, which no floor mends, and a cost that one does.
+        let turned = curve.scaled(-1.0);
+        prop_assert!(!mends(&turned).unwrap().contains("floor of at least"));
+        let as_cost = refusal(Aim::Minimise, 0.0, f64::INFINITY, turned.clone()).unwrap();
+        prop_assert!(as_cost.contains("floor of at least"));
+        prop_assert_eq!(refusal(Aim::Minimise, floor, f64::INFINITY, turned), None);
+        Ok(())
+    });
 }
