@@ -68,12 +68,15 @@ fn command_line(given: &[OsString]) -> String {
 /// Reads the plan that the arguments name.
 fn read(arguments: &PlanArguments, terminal: &Terminal) -> Result<Plan, Failure> {
     read_plan(&arguments.request()).map_err(|diagnostics| {
-        Failure::Data(
-            diagnostics
-                .render(terminal.colours_faults())
-                .trim_end()
-                .to_owned(),
-        )
+        let faults = diagnostics
+            .render(terminal.colours_faults())
+            .trim_end()
+            .to_owned();
+        if diagnostics.are_of_the_request() {
+            Failure::Request(faults)
+        } else {
+            Failure::Data(faults)
+        }
     })
 }
 

@@ -40,6 +40,9 @@ pub(super) enum Failure {
     /// The options do not fit together.
     #[error("error: {0}")]
     Usage(String),
+    /// The options ask for what the plan cannot give; every fault is already worded.
+    #[error("{0}")]
+    Request(String),
     /// The files are at fault; every fault is already worded.
     #[error("{0}")]
     Data(String),
@@ -69,7 +72,7 @@ impl Failure {
 
     pub(super) fn status(&self) -> Status {
         match self {
-            Failure::Usage(_) => Status::WrongUsage,
+            Failure::Usage(_) | Failure::Request(_) => Status::WrongUsage,
             Failure::Data(_) => Status::BadData,
             Failure::NoPlan(_) => Status::NoPlan,
             Failure::Write { .. } | Failure::Stdout(_) => Status::Other,

@@ -70,32 +70,36 @@ impl CurveError {
     }
 }
 
-/// `value` if it is finite, or the error that says so.
+/// Size beyond which a parameter is a slip, and products of two of them would leave the range of
+/// numbers.
+const LARGEST: f64 = 1e100;
+
+/// `value` if it is a number of a sensible size, or the error that says so.
 pub(super) fn finite(family: Family, parameter: Parameter, value: f64) -> Result<f64, CurveError> {
-    if value.is_finite() {
+    if value.abs() <= LARGEST {
         return Ok(value);
     }
     Err(CurveError::OutOfDomain {
         family,
         parameter,
         found: value,
-        rule: "a finite number",
+        rule: "a number between −1e100 and 1e100",
     })
 }
 
-/// `value` if it is finite and above zero, or the error that says so.
+/// `value` if it is above zero and of a sensible size, or the error that says so.
 pub(super) fn positive(
     family: Family,
     parameter: Parameter,
     value: f64,
 ) -> Result<f64, CurveError> {
-    if 0.0 < value && value.is_finite() {
+    if (1.0 / LARGEST..=LARGEST).contains(&value) {
         return Ok(value);
     }
     Err(CurveError::OutOfDomain {
         family,
         parameter,
         found: value,
-        rule: "above 0 and finite",
+        rule: "above 0 (from 1e-100 to 1e100)",
     })
 }

@@ -11,6 +11,9 @@ use crate::numeric::figures::amount;
 /// Faults of one kind that are kept with their place; more are only counted.
 const KEPT_PER_KIND: usize = 20;
 
+/// The place of a fault that lies in what was asked for.
+pub(super) const COMMAND_LINE: &str = "the command line";
+
 /// Columns of the page that faults are rendered for.
 const PAGE_WIDTH: usize = 100;
 
@@ -113,6 +116,13 @@ impl Diagnostics {
         let mut all = Self::default();
         all.add(kind, || place, what, mend);
         all
+    }
+
+    /// Whether all faults lie in what was asked for, and none in a file.
+    pub fn are_of_the_request(&self) -> bool {
+        self.faults
+            .iter()
+            .all(|fault| fault.place.file == COMMAND_LINE)
     }
 
     /// How many faults there are, those that are not shown included.

@@ -8,7 +8,7 @@ use rustc_hash::FxHashSet;
 use sha2::{Digest, Sha256};
 
 use super::activities::ActivitiesTable;
-use super::faults::{Diagnostics, Spot};
+use super::faults::{COMMAND_LINE, Diagnostics, Spot};
 use super::header::{ACTIVITY, ExtraColumn, nearest};
 use super::notes::Note;
 use super::place::Place;
@@ -217,7 +217,7 @@ fn limit_of(plan: &PlanFile, aim: Aim, faults: &mut Diagnostics) -> Option<Const
     if limit.is_none() {
         let place = || {
             let given = plan.limit_place.clone();
-            given.unwrap_or_else(|| Place::file("the command line"))
+            given.unwrap_or_else(|| Place::file(COMMAND_LINE))
         };
         faults.add("a limit at fault", place, what, mend);
     }
