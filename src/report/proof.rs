@@ -12,10 +12,17 @@ const BOUND_DIGITS: usize = 8;
 /// Digits of a residual; its size is what matters.
 const RESIDUAL_DIGITS: usize = 2;
 
+/// Relative rounding that a total itself may carry; a smaller gap says no more than this.
+const ROUNDING_OF_TOTAL: f64 = 1e-15;
+
 /// The certificate as one or two sentences.
 pub(super) fn certificate_line(aim: Aim, certificate: &Certificate, units: Units) -> String {
     let bound = |value: f64| units.total(value, BOUND_DIGITS);
-    let gap = figures::figure(certificate.gap, RESIDUAL_DIGITS);
+    let gap = if certificate.gap < ROUNDING_OF_TOTAL {
+        format!("below {ROUNDING_OF_TOTAL:e}")
+    } else {
+        figures::figure(certificate.gap, RESIDUAL_DIGITS)
+    };
     let verdict = match (certificate.verdict, aim) {
         (Verdict::Proven, Aim::Maximise) => format!(
             "Proven: no split within these limits can bring more than {} (relative gap {gap}).",
