@@ -119,18 +119,20 @@ impl Search<'_> {
         }
     }
 
-    /// Moves away from a guess, in growing steps, until the limit is enclosed.
+    /// Moves away from a guess, in growing steps, until both ends have been looked at. Their
+    /// heights do not count: a demand of nothing or without end has none.
     fn step_out(&mut self, guess: i64) -> Option<PriceBracket> {
         let mut trial = guess.clamp(self.low + 1, self.high - 1);
         let mut step = FIRST_STEP;
-        while self.above.is_none() || self.below.is_none() {
+        let (lowest, highest) = (self.low, self.high);
+        while self.low == lowest || self.high == highest {
             if let Some(found) = self.look_at(trial) {
                 return Some(found);
             }
             if self.high.abs_diff(self.low) <= 1 {
                 return None;
             }
-            trial = if self.below.is_none() {
+            trial = if self.high == highest {
                 self.low.saturating_add(step)
             } else {
                 self.high.saturating_sub(step)
