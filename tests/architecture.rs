@@ -8,13 +8,25 @@ use std::path::{Path, PathBuf};
 const LONGEST_FILE: usize = 350;
 
 /// Every module and those that it may import, itself aside.
-const MAY_IMPORT: [(&str, &[&str]); 11] = [
+const MAY_IMPORT: [(&str, &[&str]); 13] = [
     ("numeric", &[]),
     ("curves", &["numeric"]),
     ("model", &["numeric", "curves"]),
     ("input", &["numeric", "curves", "model"]),
     ("solver", &["numeric", "curves", "model"]),
     ("certificate", &["numeric", "curves", "model"]),
+    ("estimation", &["numeric", "curves", "model"]),
+    (
+        "uncertainty",
+        &[
+            "numeric",
+            "curves",
+            "model",
+            "estimation",
+            "solver",
+            "certificate",
+        ],
+    ),
     (
         "sensitivity",
         &["numeric", "curves", "model", "solver", "certificate"],

@@ -167,6 +167,52 @@ fn an_activity_split_in_two_halves_gets_the_same_together() {
     assert_eq!(halves.spends[0], halves.spends[1]);
 }
 
+/// One of two activities that together return what this one does, each at half the spend.
+fn half_of(activity: &Activity) -> Activity {
+    let old = activity.curve.parameters();
+    let family = activity.curve.family();
+    let mut new = old;
+    for (parameter, value) in old.iter() {
+        let factor = match (family, parameter) {
+            (Family::Power, Parameter::Gain) => {
+                2_f64.powf(old.get(Parameter::Exponent).unwrap() - 1.0)
+            }
+            (_, Parameter::Curvature) => 2.0,
+            (_, Parameter::Gain | Parameter::Ceiling | Parameter::Scale) => 0.5,
+            _ => 1.0,
+        };
+        new = new.with(parameter, value * factor);
+    }
+    Activity {
+        curve: Curve::from_parameters(family, &new).unwrap(),
+        floor: activity.floor / 2.0,
+        cap: activity.cap / 2.0,
+        ..activity.clone()
+    }
+}
+
+#[test]
+fn every_activity_may_be_split_in_two_halves() {
+    for size in SIZES {
+        let plan = mixed_plan(size);
+        let before = solve(&plan).unwrap();
+        let halves = plan
+            .activities()
+            .iter()
+            .flat_map(|a| [half_of(a), half_of(a)]);
+        let (split, after) = solved(halves.collect(), plan.constraints()[0].limit);
+        let joined: Vec<f64> = after
+            .spends
+            .chunks(2)
+            .map(|pair| pair[0] + pair[1])
+            .collect();
+        assert_same(&joined, &before.spends, 1e-12);
+        assert_same(&after.shadow_prices, &before.shadow_prices, 1e-12);
+        let totals = [split.total(&after.spends), plan.total(&before.spends)];
+        assert_same(&totals[..1], &totals[1..], 1e-12);
+    }
+}
+
 #[test]
 fn an_activity_that_earns_less_than_the_price_changes_nothing() {
     for size in SIZES {
