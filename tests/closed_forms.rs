@@ -176,6 +176,33 @@ fn tied_activities_share_what_is_left_in_proportion_to_their_room() {
 }
 
 #[test]
+fn a_line_among_thousands_sets_the_price() {
+    // So many activities are priced from a sample first. An uncapped line that is not in it asks
+    // for everything below its price, and nothing on the way there tells how far it is.
+    for (slope, cap) in [(1.5, f64::INFINITY), (1.5, 1e9), (0.1, f64::INFINITY)] {
+        let mut activities: Vec<Activity> = (0..10_000)
+            .map(|i| {
+                log(
+                    1.0 + f64::from(i % 101) / 50.0,
+                    1.0 + f64::from(i % 89) / 44.0,
+                )
+            })
+            .collect();
+        activities.insert(77, linear(slope, cap));
+        let asked_by_others: f64 = activities
+            .iter()
+            .map(|activity| activity.curve.inverse_marginal(slope).least)
+            .filter(|spend| spend.is_finite())
+            .sum();
+        let limit = asked_by_others + 100.0;
+        let (plan, solution) = answered(Aim::Maximise, activities, budget(limit));
+        assert_eq!(solution.shadow_prices, [slope]);
+        assert!((solution.spends[77] - 100.0).abs() < 1e-6);
+        assert!((plan.used(0, &solution.spends) / limit - 1.0).abs() < 1e-15);
+    }
+}
+
+#[test]
 fn a_budget_that_ends_on_a_knot_leaves_the_spend_on_it() {
     let knots = [(0.0, 0.0), (1.1, 5.0), (2.3, 8.0), (4.0, 9.0)]
         .map(|(spend, value)| Knot { spend, value });
@@ -486,5 +513,38 @@ fn parameters_of_any_size_are_proven() {
         let limit = size();
         let (plan, solution) = answered(Aim::Maximise, activities, budget(limit));
         assert!(plan.used(0, &solution.spends) <= limit);
+    }
+}
+
+#[test]
+fn no_price_however_wild_proves_money_left_unspent() {
+    // The first unit of a power curve is worth without bound, and 4e-10 of the budget is left.
+    for count in [1, 2500] {
+        let mut activities: Vec<Activity> = (0..count)
+            .map(|_| Activity {
+                floor: 1.0,
+                ..linear(1.0, 2.0)
+            })
+            .collect();
+        let steep = PowerParams {
+            gain: f64::from(count),
+            exponent: 0.05,
+        };
+        let steep = Power::new(steep).unwrap();
+        activities.push(Activity::new("steep", Curve::Power(steep)));
+        let mut spends = vec![1.0; activities.len()];
+        spends[activities.len() - 1] = 0.0;
+        let limit = f64::from(count) * (1.0 + 4e-10);
+        let plan = Problem::new(Aim::Maximise, activities, vec![budget(limit)]).unwrap();
+        let best = plan.total(&solve(&plan).unwrap().spends);
+        assert!(best > 1.3 * plan.total(&spends));
+        for price in [1.0, 1e8, 1e100, 1e300, f64::INFINITY] {
+            let claim = Solution {
+                spends: spends.clone(),
+                shadow_prices: vec![price],
+            };
+            let certificate = certify(&plan, &claim, CrossCheck::WhenQuick);
+            assert_eq!(certificate.verdict, Verdict::NotProven, "{certificate:?}");
+        }
     }
 }

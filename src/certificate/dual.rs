@@ -23,6 +23,11 @@ use crate::numeric::{BLOCK, CompensatedSum, block_sums};
 /// any tolerance.
 const SPEND_ROUNDING: f64 = 4.0 * f64::EPSILON;
 
+/// Share of what the limits are worth at the claimed prices that counts as the plan's size. With
+/// a tolerance of 1e-9 it lets pass a rounding of 1e-14 of a limit, whatever its price, and no
+/// more: a price of 1e300 would make anything small.
+const LIMITS_SHARE: f64 = 1e-5;
+
 /// What a plan misses, in units of worth where not said otherwise.
 #[derive(Debug, Clone, Copy)]
 pub(super) struct Residuals {
@@ -34,7 +39,8 @@ pub(super) struct Residuals {
     pub stationarity: f64,
     /// Greatest |λ_k·slack_k|.
     pub complementarity: f64,
-    /// The greater of Σ|f_i(x_i)| and Σ|λ_k b_k|, what gap and complementarity are compared with.
+    /// The greater of Σ|f_i(x_i)| and [`LIMITS_SHARE`] of Σ|λ_k b_k|, what gap and complementarity
+    /// are compared with.
     pub scale: f64,
 }
 
@@ -95,7 +101,8 @@ impl Residuals {
             });
         }
         let gap = whole.gap.total();
-        // The dual value is also made of what the limits are worth.
+        // The dual value is also made of what the limits are worth, and keeps their rounding. A
+        // claimed price can make that as large as it likes, so little of it counts.
         let limits_worth: f64 = problem
             .constraints()
             .iter()
@@ -113,7 +120,7 @@ impl Residuals {
             primal: whole.primal,
             stationarity: whole.stationarity,
             complementarity,
-            scale: whole.scale.total().max(limits_worth),
+            scale: whole.scale.total().max(LIMITS_SHARE * limits_worth),
         }
     }
 

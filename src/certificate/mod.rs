@@ -61,7 +61,7 @@ pub struct Certificate {
     /// Greatest value that the best total can have; +∞ where nothing is known.
     pub upper_bound: f64,
     /// (dual value − total)/scale, ≥ 0. The scale is the greater of Σ|w_i r_i|, the returns without their
-    /// bases, and Σ|λ_k b_k|, what the limits are worth.
+    /// bases, and 1e-5 of Σ|λ_k b_k|, what the limits are worth.
     pub gap: f64,
     /// Greatest violation of a bound or a limit, relative to the greater of it and the size of what stands
     /// against it, Σ|a_ki x_i| for a limit.
