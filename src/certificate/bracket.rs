@@ -13,7 +13,7 @@ use super::polyline::{Breakpoints, Polyline, SpendBounds};
 use super::programme::{Programme, Side};
 use super::room::Room;
 use crate::curves::{Curve, ReturnCurve};
-use crate::model::{Activity, Problem, Solution};
+use crate::model::{Activity, Constraint, Problem, Sense, Solution};
 use crate::numeric::CompensatedSum;
 
 /// Activities and pieces of tabulated curves, together, up to which the cross-check runs unless
@@ -69,7 +69,12 @@ pub struct LpBracket {
 }
 
 /// Runs the cross-check, unless the plan is too large for one that was not asked for.
-pub(super) fn cross_check(problem: &Problem, solution: &Solution, when: CrossCheck) -> LpCheck {
+pub(super) fn cross_check(
+    problem: &Problem,
+    solution: &Solution,
+    feasible: bool,
+    when: CrossCheck,
+) -> LpCheck {
     let size: usize = problem
         .activities()
         .iter()
@@ -84,13 +89,13 @@ pub(super) fn cross_check(problem: &Problem, solution: &Solution, when: CrossChe
             limit: CROSS_CHECKED_UP_TO,
         };
     }
-    match enclose(problem, solution) {
+    match enclose(problem, solution, feasible) {
         Ok(bracket) => LpCheck::Bracketed(bracket),
         Err(reason) => LpCheck::Failed { reason },
     }
 }
 
-fn enclose(problem: &Problem, solution: &Solution) -> Result<LpBracket, String> {
+fn enclose(problem: &Problem, solution: &Solution, feasible: bool) -> Result<LpBracket, String> {
     let mut breakpoints = first_breakpoints(problem, solution);
     let bases: f64 = problem
         .activities()
@@ -139,6 +144,14 @@ fn enclose(problem: &Problem, solution: &Solution) -> Result<LpBracket, String> 
             return Err("the two programmes contradict each other".to_owned());
         }
         let encloses = least.worth - room <= claimed && claimed <= most.worth + room;
+        // The simplex solver errs too, on numbers many powers of ten apart. Its word against a plan
+        // counts where it shows a better one.
+        if feasible && claimed > most.worth + room {
+            return Err("it puts the best below a plan that can be carried out".to_owned());
+        }
+        if claimed < least.worth - room && !is_better(problem, &least.spends, claimed) {
+            return Err("the better plan that it claims cannot be carried out".to_owned());
+        }
         let closed = most.worth - least.worth <= BRACKET_WIDTH * size;
         // A claim outside the bracket stays outside every narrower one.
         if closed || !encloses || rounds == MOST_ROUNDS {
@@ -160,6 +173,35 @@ fn enclose(problem: &Problem, solution: &Solution) -> Result<LpBracket, String> 
             });
         rounds += 1;
     }
+}
+
+/// Whether these spends, brought within their bounds, meet the limits as far as a simplex solver
+/// meets its rows, and are worth more than `claimed`.
+fn is_better(problem: &Problem, spends: &[f64], claimed: f64) -> bool {
+    let within: Vec<f64> = spends
+        .iter()
+        .zip(problem.activities())
+        .map(|(spend, activity)| spend.max(activity.floor).min(activity.cap))
+        .collect();
+    let worth: CompensatedSum = within
+        .iter()
+        .enumerate()
+        .map(|(i, &spend)| problem.worth(i).value(spend))
+        .collect();
+    let meets = |(k, constraint): (usize, &Constraint)| {
+        let used = problem.used(k, &within);
+        let room = BRACKET_TOLERANCE * constraint.limit.abs().max(used.abs());
+        let (over, under) = (
+            used > constraint.limit + room,
+            used < constraint.limit - room,
+        );
+        match constraint.sense {
+            Sense::AtMost => !over,
+            Sense::AtLeast => !under,
+            Sense::Equal => !over && !under,
+        }
+    };
+    worth.total() > claimed && problem.constraints().iter().enumerate().all(meets)
 }
 
 /// Breakpoints round the claimed spends and prices. The bounds hold whatever was claimed.

@@ -87,7 +87,7 @@ pub fn certify(problem: &Problem, solution: &Solution, cross_check: CrossCheck) 
         -problem.aim().sign() * f64::INFINITY
     };
     let bound = total + problem.aim().sign() * residuals.gap;
-    let lp = bracket::cross_check(problem, solution, cross_check);
+    let lp = bracket::cross_check(problem, solution, feasible, cross_check);
     let within_bracket = match &lp {
         LpCheck::Bracketed(bracket) => bracket.encloses,
         // Without a bracket the proof is the gap alone, and the report says so.

@@ -156,6 +156,9 @@ fn headline(problem: &Problem, units: Units) -> String {
             )
         })
         .collect();
+    if limits.is_empty() {
+        return format!("{who}, for {what}; no limit is given yet.");
+    }
     format!(
         "{who}, for {what}, within {}.",
         names(&limits, limits.len())
