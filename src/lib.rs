@@ -32,6 +32,31 @@
 //! | [`report`] | the findings as plain data, and their renderings |
 //! | [`charts`] | the pictures, one a file, drawn once for PNG and SVG |
 //! | [`cli`] | arguments, terminal, clock and exit status |
+//!
+//! # As a library
+//!
+//! ```
+//! use isomargin::certificate::{CrossCheck, Verdict, certify};
+//! use isomargin::curves::{Curve, Log, LogParams};
+//! use isomargin::model::{Activity, Aim, Constraint, Problem};
+//! use isomargin::solver::solve;
+//!
+//! // S. Boyd and L. Vandenberghe, Convex Optimization, 2004, Example 5.2: channels with noise
+//! // .8, 1 and 1.2 and a power of 1 in all.
+//! let channels = [0.8, 1.0, 1.2].map(|scale| {
+//!     let curve = Log::new(LogParams { gain: 1.0, scale }).map(Curve::Log);
+//!     curve.map(|curve| Activity::new(format!("noise {scale}"), curve))
+//! });
+//! let activities = channels.into_iter().collect::<Result<Vec<_>, _>>()?;
+//! let plan = Problem::new(Aim::Maximise, activities, vec![Constraint::budget(1.0)])
+//!     .map_err(|faults| faults[0].clone())?;
+//! let solution = solve(&plan)?;
+//! assert!((solution.spends[0] - 8.0 / 15.0).abs() < 1e-14);
+//! assert!((solution.shadow_prices[0] - 0.75).abs() < 1e-14);
+//! let certificate = certify(&plan, &solution, CrossCheck::WhenQuick);
+//! assert_eq!(certificate.verdict, Verdict::Proven);
+//! # Ok::<(), Box<dyn std::error::Error>>(())
+//! ```
 
 pub mod certificate;
 pub mod charts;
